@@ -1,0 +1,11 @@
+"""The graph of sand bodies, every question asked of it, and the files that carry the answers."""
+
+from __future__ import annotations
+
+from fzconnect.network.cut import Cut
+from fzconnect.network.export import study_files
+from fzconnect.network.graph import FaultNetwork
+from fzconnect.network.pathway import Pathway
+from fzconnect.network.study import Pair, Study, study
+
+__all__ = ["Cut", "FaultNetwork", "Pair", "Pathway", "Study", "study", "study_files"]

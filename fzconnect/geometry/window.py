@@ -67,11 +67,11 @@ class Windows:
 
     def footwall_sand(self, window: int) -> str:
         """Return the name of the sand body on the footwall side of a window."""
-        return self.zone.bodies[self.footwall_body[window]].name
+        return self.zone.bodies[int(self.footwall_body[window])].name
 
     def hanging_wall_sand(self, window: int) -> str:
         """Return the name of the sand body on the hanging-wall side of a window."""
-        return self.zone.bodies[self.hanging_wall_body[window]].name
+        return self.zone.bodies[int(self.hanging_wall_body[window])].name
 
     def corners(self, window: int) -> tuple[Array, Array, Array]:
         """Return distance, upper depth and lower depth, m, at the corners of a window."""

@@ -6,6 +6,16 @@ from fzconnect.network.cut import Cut
 from fzconnect.network.export import study_files
 from fzconnect.network.graph import FaultNetwork
 from fzconnect.network.pathway import Pathway
-from fzconnect.network.study import Pair, Study, study
+from fzconnect.network.study import Answer, Pair, RankedPathway, Study, study
 
-__all__ = ["Cut", "FaultNetwork", "Pair", "Pathway", "Study", "study", "study_files"]
+__all__ = [
+    "Answer",
+    "Cut",
+    "FaultNetwork",
+    "Pair",
+    "Pathway",
+    "RankedPathway",
+    "Study",
+    "study",
+    "study_files",
+]

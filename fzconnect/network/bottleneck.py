@@ -33,7 +33,9 @@ class WidestTree:
         """Return the widest forest of a network by an edge attribute, with Kruskal's method."""
         sets: nx.utils.UnionFind[str] = nx.utils.UnionFind()
         kept = []
-        for u, v, size in sorted(graph.edges(data=width), key=lambda e: (-e[2], e[0], e[1])):
+        edges = [(u, v, float(data[width])) for u, v, data in graph.edges(data=True)]
+        # names break ties, so that the forest does not hang on the order of insertion
+        for u, v, size in sorted(edges, key=lambda edge: (-edge[2], edge[0], edge[1])):
             if sets[u] != sets[v]:
                 sets.union(u, v)
                 kept.append((u, v, size))

@@ -38,8 +38,9 @@ def minimum_cut(graph: nx.Graph[str], sources: Sequence[str], targets: Sequence[
     """
     capacities: nx.Graph[str] = nx.Graph()
     capacities.add_nodes_from(graph)
-    for u, v, area in graph.edges(data="area"):
-        capacities.add_edge(u, v, capacity=area)
+    capacities.add_edges_from(
+        (u, v, {"capacity": attributes["area"]}) for u, v, attributes in graph.edges(data=True)
+    )
     # networkx reads an edge without capacity as one without a limit
     capacities.add_edges_from((_SOURCE, node) for node in sources)
     capacities.add_edges_from((node, _TARGET) for node in targets)

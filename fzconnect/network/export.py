@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import json
 import platform
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping, Sequence
 from importlib.metadata import version
 from io import BytesIO
 from typing import TYPE_CHECKING, Any
@@ -15,12 +15,11 @@ from typing import TYPE_CHECKING, Any
 import networkx as nx
 
 from fzconnect import __version__
-from fzconnect.network.pathway import Pathway
 
 if TYPE_CHECKING:
     import pandas as pd
 
-    from fzconnect.network.study import Pair, Study
+    from fzconnect.network.study import RankedPathway, Study
 
 __all__ = [
     "CAUTION",
@@ -37,41 +36,31 @@ CAUTION = (
     "practitioners."
 )
 
-Progress = Callable[[str, int, int], None]
-
 
 def study_files(
     study: Study,
+    ranked: Sequence[RankedPathway],
     *,
     inputs: Mapping[str, str] | None = None,
-    per_pair: int = 3,
-    progress: Progress | None = None,
 ) -> dict[str, str | bytes]:
     """Return the output files of a study, by name, without the report.
 
     Parameters
     ----------
     study : Study
+    ranked : sequence of RankedPathway
+        As `Study.ranked_pathways` gives them.
     inputs : mapping, optional
         SHA-256 of each input file by name, for the record.
-    per_pair : int
-        How many pathways to list for each connected pair.
-    progress : callable, optional
-        Called with (what, done, in all).
 
     Notes
     -----
     `windows.csv`, `sand_pairs.csv`, `pathways.csv`, `network.graphml`, `network.json` (node-link)
     and `summary.json`.
     """
-    say = progress or (lambda what, done, total: None)
-    ranked = study.pathways(
-        per_pair=per_pair, progress=lambda done, total: say("pathways", done, total)
-    )
-    pairs = sand_pairs_table(study, progress=lambda done, total: say("sand pairs", done, total))
     return {
         "windows.csv": _csv(study.windows.table()),
-        "sand_pairs.csv": _csv(pairs),
+        "sand_pairs.csv": _csv(sand_pairs_table(study, ranked)),
         "pathways.csv": _csv(pathways_table(ranked)),
         "network.graphml": graphml_bytes(study.network.graph),
         "network.json": node_link_json(study.network.graph),
@@ -79,56 +68,40 @@ def study_files(
     }
 
 
-def sand_pairs_table(
-    study: Study, *, progress: Callable[[int, int], None] | None = None
-) -> pd.DataFrame:
+def sand_pairs_table(study: Study, ranked: Sequence[RankedPathway]) -> pd.DataFrame:
     """Return one row for every pair, with minimum cuts and critical windows; areas in m2.
 
     The columns for transmissibility are empty: flow is not worked out here.
     """
     table = study.pairs_table()
     network, areas = study.network, study.network.cut_areas
-    cuts, critical, crossings = [], [], []
-    for done, pair in enumerate(study.pairs, start=1):
-        ends = pair.hanging_wall_sand, pair.footwall_sand
-        cuts.append(areas.get(network.ends(*ends), 0.0))
-        critical.append(len(study.critical_windows(pair)))
-        best = next(network.pathways(*ends, limit=1), None)
-        crossings.append(best.crossings if best else None)
-        if progress:
-            progress(done, len(study.pairs))
+    best = {one.pair: one.pathway.crossings for one in ranked if one.rank == 1}
+    ends = [network.ends(pair.hanging_wall_sand, pair.footwall_sand) for pair in study.pairs]
     table.insert(5, "transmissibility_low", "")
     table.insert(6, "transmissibility_high", "")
-    table["minimum_cut_area"] = cuts
-    table["critical_windows"] = critical
-    table["crossings"] = _integers(crossings)
+    table["minimum_cut_area"] = [areas.get(pair, 0.0) for pair in ends]
+    table["critical_windows"] = [len(study.critical_windows(pair)) for pair in study.pairs]
+    table["crossings"] = [best.get(pair, "") for pair in study.pairs]
     return table
 
 
-def _integers(values: list[int | None]) -> pd.Series[Any]:
-    """Return whole numbers with gaps as a series that writes gaps as empty cells."""
-    import pandas as pd
-
-    return pd.Series(values, dtype="Int64")
-
-
-def pathways_table(ranked: list[tuple[Pair, int, Pathway]]) -> pd.DataFrame:
-    """Return one row a pathway, as ranked by `Study.pathways`; areas in m2, resistance in 1/m2."""
+def pathways_table(ranked: Sequence[RankedPathway]) -> pd.DataFrame:
+    """Return one row a pathway; areas in m2, resistance in 1/m2."""
     import pandas as pd
 
     return pd.DataFrame(
         [
             {
-                "hanging_wall_sand": pair.hanging_wall_sand,
-                "footwall_sand": pair.footwall_sand,
-                "rank": rank,
-                "crossings": pathway.crossings,
-                "bottleneck_area": pathway.bottleneck_area,
-                "bottleneck_strand": pathway.bottleneck_strand,
-                "resistance": pathway.resistance,
-                "pathway": str(pathway),
+                "hanging_wall_sand": one.pair.hanging_wall_sand,
+                "footwall_sand": one.pair.footwall_sand,
+                "rank": one.rank,
+                "crossings": one.pathway.crossings,
+                "bottleneck_area": one.pathway.bottleneck_area,
+                "bottleneck_strand": one.pathway.bottleneck_strand,
+                "resistance": one.pathway.resistance,
+                "pathway": str(one.pathway),
             }
-            for pair, rank, pathway in ranked
+            for one in ranked
         ],
         columns=[
             "hanging_wall_sand",

@@ -101,7 +101,7 @@ class FaultNetwork:
     @cached_property
     def bridges(self) -> tuple[tuple[str, str], ...]:
         """Edges without which the network falls into more pieces, footwall side first."""
-        return tuple(self.ordered(edge) for edge in nx.bridges(self.graph))
+        return tuple(self.ordered((edge[0], edge[1])) for edge in nx.bridges(self.graph))
 
     @cached_property
     def critical_windows(self) -> tuple[tuple[str, str], ...]:
@@ -232,7 +232,8 @@ def _nodes(zone: FaultZone) -> Iterator[tuple[str, dict[str, Any]]]:
     past = [body.last + 1 for body in zone.bodies]
     for block, block_name in enumerate(zone.block_names):
         depth = zone.block_boundaries(block)
-        mean = np.trapezoid(np.diff(depth, axis=0), zone.stations, axis=1) / length
+        area = np.asarray(np.trapezoid(np.diff(depth, axis=0), zone.stations, axis=1))
+        mean = area / length
         vsh = zone.across(zone.vsh, block)
         permeability = None
         if zone.permeability is not None:

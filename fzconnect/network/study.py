@@ -17,7 +17,7 @@ if TYPE_CHECKING:
 
     from fzconnect.scenario import Scenario
 
-__all__ = ["Answer", "Pair", "Study", "study"]
+__all__ = ["Answer", "Pair", "RankedPathway", "Study", "study"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -46,6 +46,15 @@ class Pair:
         if self.connected == self.connected_single_plane:
             return "same"
         return "gained" if self.connected else "lost"
+
+
+@dataclass(frozen=True, slots=True)
+class RankedPathway:
+    """A pathway of a pair with its rank, 1 for the least resistance."""
+
+    pair: Pair
+    rank: int
+    pathway: Pathway
 
 
 @dataclass(frozen=True, eq=False)
@@ -102,10 +111,10 @@ class Study:
         """The pairs that connect across the zone."""
         return tuple(pair for pair in self.pairs if pair.connected)
 
-    def pathways(
+    def ranked_pathways(
         self, *, per_pair: int = 3, progress: Callable[[int, int], None] | None = None
-    ) -> list[tuple[Pair, int, Pathway]]:
-        """Return the best pathways of every connected pair as (pair, rank from 1, pathway).
+    ) -> list[RankedPathway]:
+        """Return the pathways of least resistance of every connected pair.
 
         Parameters
         ----------
@@ -113,12 +122,12 @@ class Study:
         progress : callable, optional
             Called with (pairs done, pairs in all) after each pair.
         """
-        ranked = []
+        ranked: list[RankedPathway] = []
         for done, pair in enumerate(self.connected_pairs, start=1):
             found = self.network.pathways(
                 pair.hanging_wall_sand, pair.footwall_sand, limit=per_pair
             )
-            ranked.extend((pair, rank, pathway) for rank, pathway in enumerate(found, start=1))
+            ranked.extend(RankedPathway(pair, rank, way) for rank, way in enumerate(found, start=1))
             if progress:
                 progress(done, len(self.connected_pairs))
         return ranked

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
 import networkx as nx
 
-__all__ = ["Cut", "minimum_cut"]
+__all__ = ["Cut", "minimum_cut", "whole_capacities"]
 
 _SOURCE, _TARGET = "\0source", "\0target"  # cannot clash: names hold no control characters
 
@@ -36,11 +37,7 @@ def minimum_cut(graph: nx.Graph[str], sources: Sequence[str], targets: Sequence[
     By the maximum flow with areas as capacities (Ford & Fulkerson 1956); groups are joined to one
     end each by edges without a limit.
     """
-    capacities: nx.Graph[str] = nx.Graph()
-    capacities.add_nodes_from(graph)
-    capacities.add_edges_from(
-        (u, v, {"capacity": attributes["area"]}) for u, v, attributes in graph.edges(data=True)
-    )
+    capacities, _ = whole_capacities(graph)
     # networkx reads an edge without capacity as one without a limit
     capacities.add_edges_from((_SOURCE, node) for node in sources)
     capacities.add_edges_from((node, _TARGET) for node in targets)
@@ -51,5 +48,24 @@ def minimum_cut(graph: nx.Graph[str], sources: Sequence[str], targets: Sequence[
         for u, v in graph.edges
         if (u in near) != (v in near)
     )
-    # summed anew: the flow's own value carries rounding from every augmentation
     return Cut(float(sum(graph.edges[edge]["area"] for edge in edges)), tuple(edges))
+
+
+def whole_capacities(graph: nx.Graph[str]) -> tuple[nx.Graph[str], int]:
+    """Return the graph with areas as whole `capacity`, and the power of two of their scale.
+
+    Notes
+    -----
+    Flow methods of networkx tell a saturated edge by `flow == capacity`, which rounding of floats
+    breaks: the edges that they then name need not be a least cut, or any cut. The smallest area
+    sets the power, so that every area becomes a whole number without loss.
+    """
+    areas = [float(area) for _, _, area in graph.edges(data="area")]
+    power = 53 - math.frexp(min(areas, default=1.0))[1]
+    whole: nx.Graph[str] = nx.Graph()
+    whole.add_nodes_from(graph)
+    whole.add_edges_from(
+        (u, v, {"capacity": int(math.ldexp(area, power))})
+        for (u, v), area in zip(graph.edges, areas, strict=True)
+    )
+    return whole, power

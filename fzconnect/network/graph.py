@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from functools import cached_property
@@ -12,7 +13,7 @@ import numpy as np
 
 from fzconnect.errors import NetworkError, nearest
 from fzconnect.network.bottleneck import WidestTree
-from fzconnect.network.cut import Cut, minimum_cut
+from fzconnect.network.cut import Cut, minimum_cut, whole_capacities
 from fzconnect.network.pathway import Pathway, pathways
 
 if TYPE_CHECKING:
@@ -127,13 +128,15 @@ class FaultNetwork:
         From the tree of Gomory & Hu (1961): as many maximum flows as there are sand bodies in a
         piece serve every pair in it, and the least edge between two nodes is their minimum cut.
         """
+        whole, power = whole_capacities(self.graph)
         trees = [
-            nx.gomory_hu_tree(self.graph.subgraph(nodes), capacity="area")
-            for nodes in nx.connected_components(self.graph)
+            nx.gomory_hu_tree(whole.subgraph(nodes))
+            for nodes in nx.connected_components(whole)
             if len(nodes) > 1
         ]
         forest: nx.Graph[str] = nx.compose_all(trees) if trees else nx.Graph()
-        return WidestTree.from_graph(forest, "weight").bottlenecks(*self.outer_nodes)
+        cuts = WidestTree.from_graph(forest, "weight").bottlenecks(*self.outer_nodes)
+        return {ends: math.ldexp(cut, -power) for ends, cut in cuts.items()}
 
     @property
     def outer_nodes(self) -> tuple[frozenset[str], frozenset[str]]:

@@ -74,6 +74,7 @@ def _kinks(ta0, ta1, ba0, ba1, tb0, tb1, bb0, bb1, x):  # type: ignore[no-untype
 
 @njit(cache=True, nogil=True)
 def _mix(left: float, right: float, x: float) -> float:
+    """Return the value between `left` at x = 0 and `right` at x = 1, both of them exactly."""
     return left * (1.0 - x) + right * x
 
 
@@ -221,7 +222,7 @@ def trace_windows(
                             is_open = False
                         if is_open and (x[0] > 0.0 or lower[0] - upper[0] < LEAST_OVERLAP):
                             is_open = False
-                        start, width = stations[i], stations[i + 1] - stations[i]
+                        start, end = stations[i], stations[i + 1]
                         skip = 0
                         if is_open:
                             skip = 1  # the corner at the shared station is already there
@@ -236,7 +237,7 @@ def trace_windows(
                             rows[used, _LOWER_SIDE] = a
                             rows[used, _UPPER_SIDE] = b
                             rows[used, _UNFAULTED] = unfaulted
-                            rows[used, _FROM] = start + x[0] * width
+                            rows[used, _FROM] = _mix(start, end, x[0])
                             rows[used, _TOP] = upper[0]
                             rows[used, _BASE] = lower[0]
                             rows[used, _HEIGHT] = 0.0
@@ -246,15 +247,15 @@ def trace_windows(
                         row = rows[used - 1]
                         for c in range(skip, count):
                             vertices = _grown(vertices, corners)
-                            vertices[corners, 0] = start + x[c] * width
+                            vertices[corners, 0] = _mix(start, end, x[c])
                             vertices[corners, 1] = upper[c]
                             vertices[corners, 2] = lower[c]
                             corners += 1
                             row[_TOP] = min(row[_TOP], upper[c])
                             row[_BASE] = max(row[_BASE], lower[c])
                             row[_HEIGHT] = max(row[_HEIGHT], lower[c] - upper[c])
-                        row[_TO] = start + x[count - 1] * width
-                        row[_AREA] += area * width
+                        row[_TO] = _mix(start, end, x[count - 1])
+                        row[_AREA] += area * (end - start)
                         row[_END] = corners
                         is_open = x[count - 1] == 1.0 and (
                             lower[count - 1] - upper[count - 1] >= LEAST_OVERLAP

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from fzconnect.geometry.kernel import COLUMNS, trace_windows
+from fzconnect.geometry.kernel import COLUMNS, LEAST_OVERLAP, trace_windows
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -84,17 +84,23 @@ class Windows:
         return np.concatenate([distance, distance[::-1]]), np.concatenate([upper, lower[::-1]])
 
     def cut(self, distance: float) -> list[tuple[int, float, float]]:
-        """Return (window, top, base) for every window open at a distance along the fault, m."""
+        """Return (window, top, base) for every window open at a distance along the fault, m.
+
+        At a tip, where an unfaulted contact gives way to a faulted one, it is the unfaulted one.
+        """
         open_here = np.flatnonzero(
             (self.distance_from <= distance) & (self.distance_to >= distance)
         )
-        cuts = []
-        for window in open_here:
-            at, upper, lower = self.corners(int(window))
+        cuts: dict[tuple[int, int, int], tuple[int, float, float]] = {}
+        for window in open_here.tolist():
+            at, upper, lower = self.corners(window)
             top, base = np.interp(distance, at, upper), np.interp(distance, at, lower)
-            if base > top:
-                cuts.append((int(window), float(top), float(base)))
-        return cuts
+            ends = int(self.footwall_body[window]), int(self.hanging_wall_body[window])
+            key = int(self.strand[window]), *ends
+            is_first = key not in cuts or self.is_unfaulted[window]
+            if base - top >= LEAST_OVERLAP and is_first:
+                cuts[key] = window, float(top), float(base)
+        return list(cuts.values())
 
     def table(self) -> pd.DataFrame:
         """Return the windows as a table, one row a window; lengths in m, areas in m2."""

@@ -1,0 +1,112 @@
+"""The strip: the figures that matter, each beside its single-plane value, as HTML."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from html import escape
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from fzconnect.network import Study
+
+__all__ = ["STRIP_STYLE", "Figure", "strip_figures", "strip_html"]
+
+STRIP_STYLE = """
+.fz-strip {display: flex; flex-wrap: wrap; gap: 8px; font-family: system-ui, sans-serif;}
+.fz-figure {flex: 1 1 150px; padding: 6px 12px 8px; border-left: 4px solid #6D28A8;
+  background: #F6F4FA; color: #2B2733;}
+.fz-figure .fz-label {font-size: 13px; line-height: 1.3;}
+.fz-figure .fz-value {font-size: 24px; font-weight: 600; line-height: 1.25;
+  font-variant-numeric: tabular-nums; white-space: nowrap;}
+.fz-figure .fz-plane, .fz-figure .fz-note {font-size: 13px; color: #514B5E; line-height: 1.3;
+  font-variant-numeric: tabular-nums;}
+"""
+
+
+@dataclass(frozen=True)
+class Figure:
+    """One figure of the strip.
+
+    Attributes
+    ----------
+    label : str
+        What it is, with its unit.
+    value, single_plane : str
+        The zone's value and the single plane's.
+    note : str
+        One more short sentence, or nothing.
+    """
+
+    label: str
+    value: str
+    single_plane: str
+    note: str = ""
+
+
+def strip_figures(study: Study, pair: tuple[str, str] | None = None) -> tuple[Figure, ...]:
+    """Return the four figures of a study.
+
+    Parameters
+    ----------
+    study : Study
+    pair : (hanging-wall sand, footwall sand), optional
+        The pair whose bottleneck is shown; without one, the widest of all.
+    """
+    zone, plane = study.counts("zone"), study.counts("single plane")
+    changes = [one.change for one in study.pairs]
+    return (
+        Figure(
+            "Connected sand pairs",
+            f"{zone['connected_pairs']} of {len(study.pairs)}",
+            f"{plane['connected_pairs']}",
+            f"{changes.count('gained')} gained, {changes.count('lost')} lost",
+        ),
+        Figure(
+            "Window area, m²",
+            _area(zone["window_area"]),
+            _area(plane["window_area"]),
+            f"{zone['windows']} windows, single plane {plane['windows']}",
+        ),
+        _bottleneck(study, pair),
+        Figure(
+            "Critical windows",
+            f"{zone['critical_windows']}",
+            f"{plane['critical_windows']}",
+            "each alone holds sands together",
+        ),
+    )
+
+
+def _bottleneck(study: Study, pair: tuple[str, str] | None) -> Figure:
+    """Return the bottleneck of a pair, or the widest of all pairs."""
+    if pair is None:
+        zone, plane = study.counts("zone"), study.counts("single plane")
+        return Figure(
+            "Widest bottleneck, m²",
+            _area(zone["widest_bottleneck"]),
+            _area(plane["widest_bottleneck"]),
+            "of all sand pairs",
+        )
+    one = next(p for p in study.pairs if (p.hanging_wall_sand, p.footwall_sand) == pair)
+    return Figure(
+        "Bottleneck, m²",
+        _area(one.bottleneck_area) if one.connected else "not connected",
+        _area(one.bottleneck_area_single_plane) if one.connected_single_plane else "not connected",
+        f"hanging wall {pair[0]} to footwall {pair[1]}",
+    )
+
+
+def strip_html(study: Study, pair: tuple[str, str] | None = None) -> str:
+    """Return the strip as one HTML element with the class `fz-strip`; names are escaped."""
+    cards = "".join(
+        f'<div class="fz-figure"><div class="fz-label">{escape(figure.label)}</div>'
+        f'<div class="fz-value">{escape(figure.value)}</div>'
+        f'<div class="fz-plane">single plane: {escape(figure.single_plane)}</div>'
+        f'<div class="fz-note">{escape(figure.note)}</div></div>'
+        for figure in strip_figures(study, pair)
+    )
+    return f'<div class="fz-strip" aria-live="polite">{cards}</div>'
+
+
+def _area(area: float) -> str:
+    return f"{area:,.0f}".replace(",", "\u202f")  # narrow spaces part the thousands

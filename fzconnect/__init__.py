@@ -9,9 +9,11 @@ from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
+    from fzconnect.cli import write_study
     from fzconnect.geometry import FaultZone, Windows, find_windows
-    from fzconnect.network import FaultNetwork, Study, study
+    from fzconnect.network import FaultNetwork, Study, export_graph, study
     from fzconnect.scenario import Scenario, demo, load, save
+    from fzconnect.widgets import Workbench, workbench
 
 __version__ = "0.1.0"
 
@@ -21,11 +23,15 @@ _HOMES = {
     "find_windows": "fzconnect.geometry",
     "FaultNetwork": "fzconnect.network",
     "Study": "fzconnect.network",
+    "export_graph": "fzconnect.network",
     "study": "fzconnect.network",
     "Scenario": "fzconnect.scenario",
     "demo": "fzconnect.scenario",
     "load": "fzconnect.scenario",
     "save": "fzconnect.scenario",
+    "Workbench": "fzconnect.widgets",
+    "workbench": "fzconnect.widgets",
+    "write_study": "fzconnect.cli",
 }
 
 __all__ = [
@@ -34,12 +40,16 @@ __all__ = [
     "Scenario",
     "Study",
     "Windows",
+    "Workbench",
     "__version__",
     "demo",
+    "export_graph",
     "find_windows",
     "load",
     "save",
     "study",
+    "workbench",
+    "write_study",
 ]
 
 

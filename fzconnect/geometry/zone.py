@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Self
 import numpy as np
 from numpy.typing import NDArray
 
+from fzconnect.errors import ScenarioError
 from fzconnect.geometry.body import SandBody, sand_bodies
 from fzconnect.geometry.section import Section, cut
 
@@ -83,6 +84,12 @@ class FaultZone:
     def from_scenario(cls, scenario: Scenario) -> Self:
         """Return the fault zone that a scenario describes.
 
+        Raises
+        ------
+        ScenarioError
+            If growth, carried beyond the walls by an antithetic strand, leaves a layer of a lens
+            without thickness.
+
         Notes
         -----
         Stations are the distances of the throw profile. Where shares vary along the fault, their
@@ -95,13 +102,15 @@ class FaultZone:
         shares = np.array([strands.split_at(float(s)) for s in stations]).T
         layers = column.layers
         across = (layers, column.hanging_wall or layers)
+        faces = _faces(footwall, hanging_wall, shares)
+        _check_thickness(faces, column.names, strands.names, stations)
         return cls(
             name=scenario.name,
             stations=stations,
             footwall=footwall,
             hanging_wall=hanging_wall,
             shares=shares,
-            faces=_faces(footwall, hanging_wall, shares),
+            faces=faces,
             strand_names=tuple(strands.names),
             dip=strands.dip,
             lens_width=np.array(strands.lens_width, dtype=float),
@@ -227,10 +236,10 @@ def _boundaries(column: Column, throw: Throw, stations: Array) -> tuple[Array, A
         top_footwall = np.interp(stations, at, [cutoff.footwall for cutoff in throw.cutoffs])
         top_hanging = np.interp(stations, at, [cutoff.hanging_wall for cutoff in throw.cutoffs])
     else:
-        points = throw.profile or ((0.0, throw.total), (throw.length, throw.total))
-        at, throws = [point[0] for point in points], [point[1] for point in points]
+        total = throw.total or 0.0  # given unless there is a profile, as the scenario has checked
+        points = np.array(throw.profile or ((0.0, total), (throw.length, total)), dtype=float)
         top_footwall = np.full(len(stations), column.top, dtype=float)
-        top_hanging = top_footwall + np.interp(stations, at, throws)
+        top_hanging = top_footwall + np.interp(stations, points[:, 0], points[:, 1])
     below = _depth_below_top([layer.thickness for layer in column.layers])
     other = column.hanging_wall or column.layers
     below_hanging = _depth_below_top([layer.thickness for layer in other])
@@ -252,6 +261,23 @@ def _faces(footwall: Array, hanging_wall: Array, shares: Array) -> Array:
     blocks = footwall + cumulative[:, np.newaxis, :] * throw
     blocks[-1] = hanging_wall
     return np.stack([blocks[:-1], blocks[1:]], axis=1)
+
+
+def _check_thickness(
+    faces: Array, layers: tuple[str, ...], strands: tuple[str, ...], stations: Array
+) -> None:
+    """Refuse layers without thickness; between the walls there are none, beyond them there may be."""
+    thickness = np.diff(faces, axis=2)
+    k, side, layer, i = np.unravel_index(np.argmin(thickness), thickness.shape)
+    least = float(thickness[k, side, layer, i])
+    if least <= 0.0:
+        where = ("footwall", "hanging-wall")[int(side)]
+        msg = (
+            f'layer "{layers[int(layer)]}" would be {least:.3g} m thick on the {where} side of '
+            f"strand {strands[int(k)]} at distance {stations[i]:g} m, expected more than 0 m: the "
+            "shares of the strands carry the growth between the two columns too far there"
+        )
+        raise ScenarioError(msg)
 
 
 def _optional(rows: list[list[float | None]]) -> Array | None:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from fzconnect.network.cut import Cut
-from fzconnect.network.export import study_files
+from fzconnect.network.export import export_graph, study_files
 from fzconnect.network.graph import FaultNetwork
 from fzconnect.network.pathway import Pathway
 from fzconnect.network.study import Answer, Pair, RankedPathway, Study, study
@@ -16,6 +16,7 @@ __all__ = [
     "Pathway",
     "RankedPathway",
     "Study",
+    "export_graph",
     "study",
     "study_files",
 ]

@@ -6,23 +6,29 @@ Later columns are added at the end. An unknown value is an empty cell, never NaN
 from __future__ import annotations
 
 import json
+import os
 import platform
 from collections.abc import Mapping, Sequence
 from importlib.metadata import version
 from io import BytesIO
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import networkx as nx
 
 from fzconnect import __version__
+from fzconnect.errors import OutputError
+from fzconnect.scenario.store import write_file
 
 if TYPE_CHECKING:
     import pandas as pd
 
+    from fzconnect.network.graph import FaultNetwork
     from fzconnect.network.study import RankedPathway, Study
 
 __all__ = [
     "CAUTION",
+    "export_graph",
     "graphml_bytes",
     "node_link_json",
     "pathways_table",
@@ -153,6 +159,24 @@ def summary(study: Study, *, inputs: Mapping[str, str] | None = None) -> dict[st
         "scenario_sha256": study.scenario.fingerprint(),
         "inputs_sha256": dict(inputs or {}),
     }
+
+
+def export_graph(network: FaultNetwork, path: str | os.PathLike[str]) -> Path:
+    """Write a network as GraphML or node-link JSON, by the path's ending; return the path.
+
+    Raises
+    ------
+    OutputError
+        If the ending is neither .graphml nor .json, or the file cannot be written; an old file is
+        then as it was.
+    """
+    target = Path(path)
+    if target.suffix == ".graphml":
+        return write_file(target, graphml_bytes(network.graph))
+    if target.suffix == ".json":
+        return write_file(target, node_link_json(network.graph))
+    msg = f"{target}: ends in {target.suffix or 'nothing'!r}, expected .graphml or .json"
+    raise OutputError(msg)
 
 
 def _versions() -> dict[str, str]:

@@ -52,7 +52,7 @@ def coverage(zone: FaultZone) -> tuple[Coverage, ...]:
                 facing_area(zone.stations, top, base, other[0], other[-1])
                 for top, base in zip(tops[k, side], bases[k, side], strict=True)
             )
-            outside = min(1.0, max(0.0, 1.0 - inside / total))
+            outside = min(1.0, max(0.0, 1.0 - inside / total)) if total else 0.0
             found.append(Coverage(k + 1, name, _SIDES[side], outside))
     return tuple(found)
 

@@ -266,7 +266,7 @@ def _faces(footwall: Array, hanging_wall: Array, shares: Array) -> Array:
 def _check_thickness(
     faces: Array, layers: tuple[str, ...], strands: tuple[str, ...], stations: Array
 ) -> None:
-    """Refuse layers without thickness; between the walls there are none, beyond them there may be."""
+    """Refuse layers without thickness; only shares summed below 0 or above 1 lead to them."""
     thickness = np.diff(faces, axis=2)
     k, side, layer, i = np.unravel_index(np.argmin(thickness), thickness.shape)
     least = float(thickness[k, side, layer, i])

@@ -60,7 +60,7 @@ def whole_capacities(graph: nx.Graph[str]) -> tuple[nx.Graph[str], int]:
     breaks: the edges that they then name need not be a least cut, or any cut. The smallest area
     sets the power, so that every area becomes a whole number without loss.
     """
-    areas = [float(area) for _, _, area in graph.edges(data="area")]
+    areas = [float(attributes["area"]) for _, _, attributes in graph.edges(data=True)]
     power = 53 - math.frexp(min(areas, default=1.0))[1]
     whole: nx.Graph[str] = nx.Graph()
     whole.add_nodes_from(graph)

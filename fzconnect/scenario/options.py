@@ -21,6 +21,7 @@ from fzconnect.scenario.quantity import (
     Length,
     Name,
     Pressure,
+    Row,
     Temperature,
     Tension,
     fault,
@@ -185,6 +186,9 @@ class Flow(Part):
     outer_distance: Length = 50.0
 
 
+_Shares = Annotated[tuple[Fraction, Fraction], BeforeValidator(Row(("low", "high")))]
+
+
 class SplitDraw(Part):
     """How the throw split is drawn: one of `dirichlet`, `largest_share`.
 
@@ -197,7 +201,7 @@ class SplitDraw(Part):
     """
 
     dirichlet: Annotated[float, BeforeValidator(Amount("", above=0))] | None = None
-    largest_share: tuple[Fraction, Fraction] | None = None
+    largest_share: _Shares | None = None
 
     @model_validator(mode="after")
     def _check(self) -> Self:
@@ -216,6 +220,12 @@ class SplitDraw(Part):
 _Metres = Annotated[float, BeforeValidator(Amount("m"))]
 _Spread = Annotated[float, BeforeValidator(Amount("m", above=0))]
 _Sigma = Annotated[float, BeforeValidator(Amount("", above=0, most=10))]
+_Triangular = Annotated[
+    tuple[_Metres, _Metres, _Metres], BeforeValidator(Row(("low", "mode", "high")))
+]
+_Uniform = Annotated[tuple[_Metres, _Metres], BeforeValidator(Row(("low", "high")))]
+_Normal = Annotated[tuple[_Metres, _Spread], BeforeValidator(Row(("mean", "standard deviation")))]
+_LogNormal = Annotated[tuple[_Spread, _Sigma], BeforeValidator(Row(("median", "sigma of ln")))]
 
 
 class ThrowDraw(Part):
@@ -233,10 +243,10 @@ class ThrowDraw(Part):
         Median, standard deviation of the natural logarithm.
     """
 
-    triangular: tuple[_Metres, _Metres, _Metres] | None = None
-    uniform: tuple[_Metres, _Metres] | None = None
-    normal: tuple[_Metres, _Spread] | None = None
-    lognormal: tuple[_Spread, _Sigma] | None = None
+    triangular: _Triangular | None = None
+    uniform: _Uniform | None = None
+    normal: _Normal | None = None
+    lognormal: _LogNormal | None = None
 
     @model_validator(mode="after")
     def _check(self) -> Self:

@@ -29,6 +29,7 @@ __all__ = [
     "Permeability",
     "Points",
     "Pressure",
+    "Row",
     "Split",
     "StrandNumber",
     "Temperature",
@@ -147,10 +148,11 @@ class Choice:
         # A text that starts with a digit means to be a quantity; any other a word.
         if self.amount and not (isinstance(value, str) and not value.lstrip()[:1].isdigit()):
             return self.amount(value)
-        words = ", ".join(f'"{word}"' for word in self.words)
-        other = f" or {self.amount.describe()}" if self.amount else ""
+        allowed = [f'"{word}"' for word in self.words]
+        allowed += [self.amount.describe()] if self.amount else []
         hint = nearest(value.lower(), self.words) if isinstance(value, str) else ""
-        msg = f"found {show(value)}{hint or ','} expected {words}{other}"
+        words = f"{', '.join(allowed[:-1])} or {allowed[-1]}"
+        msg = f"found {show(value)}{hint or ','} expected {words}"
         raise fault(msg)
 
 
@@ -187,6 +189,20 @@ def _list(value: object, what: str) -> Sequence[Any]:
         msg = f"found {show(value)}, expected a list of {what}"
         raise fault(msg)
     return value
+
+
+@dataclass(frozen=True)
+class Row:
+    """A validator: a list with one entry for each word, such as ("low", "high")."""
+
+    words: tuple[str, ...]
+
+    def __call__(self, value: object) -> object:
+        """Return the list as it is, or raise a validation error that names its entries."""
+        if not isinstance(value, (list, tuple)) or len(value) != len(self.words):
+            msg = f"found {show(value)}, expected [{', '.join(self.words)}]"
+            raise fault(msg)
+        return value
 
 
 @dataclass(frozen=True)

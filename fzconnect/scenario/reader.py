@@ -9,12 +9,12 @@ from importlib import resources
 from pathlib import Path
 from typing import Any
 
-from pydantic import ValidationError
+from pydantic import TypeAdapter, ValidationError
 
 from fzconnect.errors import ScenarioError, nearest
 from fzconnect.scenario.model import Scenario
 from fzconnect.scenario.part import Place, dotted, refusal
-from fzconnect.scenario.quantity import show
+from fzconnect.scenario.quantity import Fraction, show
 from fzconnect.scenario.table import Table, read_table
 from fzconnect.scenario.textfile import TextFile, read_text
 
@@ -25,6 +25,7 @@ _KEYS = {
     "column": ("file", "hanging_wall_file", "top", "sand_cutoff"),
     "throw": ("total", "length", "profile", "file"),
 }
+_FRACTION: TypeAdapter[float] = TypeAdapter(Fraction)
 _OPTIONAL = ("permeability", "porosity", "kind")
 
 
@@ -144,10 +145,8 @@ class _Reading:
                 text=("layer", "kind"),
             )
             # What the hanging wall leaves open is as in the footwall; the model knows the rest.
-            vsh = [row["vsh"] for row in footwall.rows]
-            vsh += [0.0] * (len(other.rows) - len(vsh))
             data["hanging_wall"] = [
-                {"vsh": clay, **_layer(row)} for clay, row in zip(vsh, other.rows, strict=False)
+                {"vsh": _clay(footwall, i), **_layer(row)} for i, row in enumerate(other.rows)
             ]
         return data
 
@@ -191,6 +190,14 @@ class _Reading:
         if column == "name":
             column = "layer"
         return table.place(int(row), str(column) if column else None)
+
+
+def _clay(footwall: Table, row: int) -> float:
+    """Return vsh in the footwall; what is wrong with it there is not said again here."""
+    try:
+        return _FRACTION.validate_python(footwall.rows[row]["vsh"])
+    except (IndexError, ValidationError):
+        return 0.0
 
 
 def _layer(row: Mapping[str, Any]) -> dict[str, Any]:

@@ -26,6 +26,7 @@ _REASONS = {
     errno.EDQUOT: "the disk quota is used up",
     errno.EFBIG: "the file is too large for the disk",
     errno.ENOTDIR: "a part of the path is a file, expected a folder",
+    errno.EEXIST: "a file of that name is in the way",
     errno.EISDIR: "it is a folder, expected a file",
     errno.ENOENT: "there is no such folder",
     errno.ENAMETOOLONG: "the name is too long",
@@ -109,6 +110,7 @@ def write_folder(
     folder = Path(out)
     _check_names(files, folder)
     marked = {**files, MARKER: json.dumps({"files": sorted(files)}, indent=1) + "\n"}
+    stale: set[str] = set()
     with _said(folder):
         if folder.is_dir():
             old = _written_before(folder)
@@ -119,13 +121,18 @@ def write_folder(
                 )
                 raise OutputError(msg)
             write_files(folder, marked)
-            for name in (old or set()) - set(files):
-                _remove(folder / name)
+            stale = (old or set()) - set(files)
         elif os.path.lexists(folder):
             msg = f"{folder}: is a file, expected a folder"
             raise OutputError(msg)
         else:
             _make_folder(folder, marked)
+    for path in sorted(folder / name for name in stale):
+        try:
+            path.unlink(missing_ok=True)
+        except OSError as error:
+            msg = f"{path}: is left from an earlier run and cannot be removed: {_reason(error)}"
+            raise OutputError(msg) from None
     return folder
 
 
@@ -224,12 +231,15 @@ def _check_names(files: Mapping[str, str | bytes], folder: Path) -> None:
             raise OutputError(msg)
 
 
+def _reason(error: OSError) -> str:
+    return _REASONS.get(error.errno or 0, error.strerror or str(error))
+
+
 @contextmanager
 def _said(place: Path) -> Iterator[None]:
     """Turn what the operating system says into an `OutputError`."""
     try:
         yield
     except OSError as error:
-        reason = _REASONS.get(error.errno or 0, error.strerror or str(error))
-        msg = f"{place}: cannot be written: {reason}; nothing was changed"
+        msg = f"{place}: cannot be written: {_reason(error)}; nothing was changed"
         raise OutputError(msg) from None

@@ -125,6 +125,9 @@ def _cells(text: str, path: Path) -> tuple[list[list[str]], list[int]]:
         raise ScenarioError(msg) from None
     rows = [[str(cell) for cell in row] for row in frame.itertuples(index=False)]
     kept = [(row, i + 1 + skipped) for i, row in enumerate(rows) if any(map(str.strip, row))]
+    if not kept:
+        msg = f"{path}: has separators and no cells, expected a scenario table (CSV)"
+        raise ScenarioError(msg)
     return [row for row, _ in kept], [line for _, line in kept]
 
 

@@ -40,6 +40,9 @@ def read_text(path: Path, what: str) -> TextFile:
     ScenarioError
         If there is no such file, it cannot be read, or it is empty, too large or not text.
     """
+    if "\0" in str(path):
+        msg = f"{str(path)!r}: cannot be the path of a file"
+        raise ScenarioError(msg)
     with _said(path):
         if path.is_dir():
             example = path / "scenario.toml"
@@ -92,10 +95,4 @@ def _said(path: Path) -> Iterator[None]:
         raise ScenarioError(msg) from None
     except OSError as error:
         msg = f"{path}: cannot be read ({error.strerror or error})"
-        raise ScenarioError(msg) from None
-    except ScenarioError:
-        raise
-    except ValueError:
-        # The path itself holds a NUL or a character that no file name can have.
-        msg = f"{str(path)!r}: cannot be the path of a file"
         raise ScenarioError(msg) from None

@@ -50,11 +50,13 @@ def save(
         is as it was before.
     """
     target = Path(path)
-    files = {target.name: "", **_tables(scenario)}
-    files[target.name] = _toml(scenario)
+    tables = _tables(scenario)
+    if target.suffix == ".csv":
+        msg = f"{target}: is the name of a table, expected a scenario file such as scenario.toml"
+        raise OutputError(msg)
     if not overwrite:
-        _check_strangers(target, files)
-    return write_files(target.parent, files)
+        _check_strangers(target, tables)
+    return write_files(target.parent, {target.name: _toml(scenario), **tables})
 
 
 def starter_files() -> dict[str, str]:
@@ -113,11 +115,8 @@ def _layers(layers: tuple[Layer, ...]) -> str:
     return write_table(rows, [*_LAYER_COLUMNS[:3], *used])
 
 
-def _check_strangers(target: Path, files: dict[str, str]) -> None:
+def _check_strangers(target: Path, tables: dict[str, str]) -> None:
     """Refuse to replace tables that the scenario at the target, if any, does not name."""
-    if target.name in list(files)[1:]:
-        msg = f"{target}: is the name of a table, expected another name such as scenario.toml"
-        raise OutputError(msg)
     try:
         old = tomllib.loads(target.read_text(encoding="utf-8-sig"))
     except (OSError, ValueError, RecursionError):
@@ -130,7 +129,7 @@ def _check_strangers(target: Path, files: dict[str, str]) -> None:
         for key in ("file", "hanging_wall_file")
         if isinstance(part.get(key), str)
     }
-    for name in list(files)[1:]:
+    for name in tables:
         if name not in named and (target.parent / name).exists():
             msg = (
                 f"{target.parent / name}: is there already and is no table of {target.name}, "

@@ -1,0 +1,394 @@
+"""Strand faces: a fault-plane map of every strand side by side, and of the single plane last."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+from bokeh.models import ColumnDataSource, Range1d
+from numpy.typing import NDArray
+
+from fzconnect.views import palette
+from fzconnect.views.look import (
+    LABEL_SIZE,
+    LINE,
+    SMALL_SIZE,
+    add_key,
+    area_text,
+    base_figure,
+    nice_step,
+    number_text,
+    one_row,
+    relabel,
+    set_range,
+    spread,
+    thinned,
+    tooltip,
+    write,
+)
+from fzconnect.views.picture import Picture
+from fzconnect.views.selection import Selection, of_edge, of_pair
+
+if TYPE_CHECKING:
+    from fzconnect.geometry import FaultZone, Windows
+    from fzconnect.network import Study
+
+__all__ = ["FacesView", "faces_figure"]
+
+Array = NDArray[np.float64]
+
+_GAP = 0.07
+"""Gap between facets, part of the fault's length."""
+_LEADER = 0.035
+"""Length of the line from a band to its name, part of the width of all facets."""
+_AXES = 150  # px that title, key and axis take from the figure's height
+_PASSES = 4
+
+
+class FacesView(Picture):
+    """Fault-plane maps of all strands and of the single plane in one figure."""
+
+    def __init__(self, study: Study, distance: float, height: int) -> None:
+        super().__init__()
+        self._height = height
+        self._study: Study | None = None
+        self._sources = {
+            name: ColumnDataSource({column: [] for column in columns})
+            for name, columns in _EMPTY.items()
+        }
+        self._build()
+        self.update(study, distance)
+
+    def update(self, study: Study, distance: float) -> None:
+        """Show another study, or the section line at another distance, m."""
+        if study is not self._study:
+            self._study = study
+            self._lay_out(study)
+            self._bands(study)
+            self._windows(study)
+            self._draw_mark(self._shown)
+        self._section_line(distance)
+
+    def picked(self, source: str, index: int) -> Selection | None:
+        """Return what a tap on a window or an unfaulted contact means."""
+        found = self._picks.get(source, ())
+        if index >= len(found) or self._study is None:
+            return None
+        edge, on_plane = found[index]
+        if not on_plane:
+            return of_edge(self._study, edge)
+        lower, upper = (node.partition(": ")[2] for node in edge)
+        return of_pair(self._study, upper, lower)
+
+    def _lay_out(self, study: Study) -> None:
+        """Set the facets' offsets, the ranges, the ticks and the facet titles."""
+        zone = study.zone
+        first, length = float(zone.stations[0]), zone.length
+        count = zone.strand_count + 1
+        self._offsets = np.arange(count) * length * (1 + _GAP)
+        self._end = float(self._offsets[-1]) + length
+        tops, bases = zone.body_faces()
+        top, base = float(tops.min()), float(bases.max())
+        pad = 0.04 * (base - top)
+        self._top, self._base = top - pad, base + pad
+        self._pixel = (base - top + 2 * pad) / max(1, self._height - _AXES)
+        longest = max(len(body.name) for body in zone.bodies)
+        # names stand outside the first and the last facet; about 900 px is a usual width
+        beside = (0.03 + 0.009 * min(longest, 12)) * self._end + _LEADER * self._end
+        set_range(self.figure.x_range, -beside, self._end + beside)
+        set_range(self.figure.y_range, self._base, self._top - 22 * self._pixel)
+        step = nice_step(length, 4 if count <= 3 else 3 if count <= 4 else 2 if count <= 6 else 1)
+        ticks = np.arange(np.ceil(first / step) * step, first + length + 1e-6 * step, step)
+        labels = {
+            float(offset + tick - first): number_text(float(tick))
+            for offset in self._offsets
+            for tick in ticks
+        }
+        relabel(self.figure.xaxis[0], labels)
+        titles = [f"strand {name}" for name in zone.strand_names]
+        if count > 6:
+            titles = list(zone.strand_names)
+        self._sources["titles"].data = {
+            "x": (self._offsets + 0.5 * length).tolist(),
+            "y": [self._top - 11 * self._pixel] * count,
+            "text": [*titles, "single plane"],
+        }
+        self._sources["frames"].data = {
+            "left": self._offsets,
+            "right": self._offsets + length,
+            "top": np.full(count, self._top),
+            "bottom": np.full(count, self._base),
+        }
+
+    def _bands(self, study: Study) -> None:
+        """Replace the sand bands of both sides, each side one glyph, and the names beside them."""
+        zone, plane = study.zone, study.single_plane.zone
+        along = zone.stations - zone.stations[0]
+        tops, bases = zone.body_faces()
+        plane_tops, plane_bases = plane.body_faces()
+        tops, bases = np.concatenate([tops, plane_tops]), np.concatenate([bases, plane_bases])
+        lines = np.concatenate([tops, bases]).reshape(-1, len(along))
+        kept = _visible(along, lines, 0.35 * self._pixel)
+        x = self._offsets[:, np.newaxis] + along[kept]
+        for side, name in enumerate(("footwall bands", "hanging bands")):
+            self._sources[name].data = _closed(
+                x, tops[:, side][..., kept], bases[:, side][..., kept]
+            )
+        reach = _LEADER * self._end
+        self._names("names left", zone, tops[0, 0, :, 0], bases[0, 0, :, 0], 0.0, -reach)
+        ends = tops[-1, 1, :, -1], bases[-1, 1, :, -1]
+        self._names("names right", zone, *ends, self._end, reach)
+
+    def _names(
+        self, name: str, zone: FaultZone, top: Array, base: Array, at: float, reach: float
+    ) -> None:
+        """Name the bands at one end of the figure, moved apart, with leaders to the bands."""
+        middle, gap = 0.5 * (top + base), LINE * self._pixel
+        most = int((self._base - self._top) / gap)
+        rows = np.argsort(-(base - top), kind="stable")[:most]
+        rows = np.sort(rows)
+        places = np.clip(spread(middle[rows], gap), self._top, self._base)
+        rows = rows[thinned(places, (base - top)[rows], 0.8 * gap)] if len(rows) else rows
+        places = np.clip(spread(middle[rows], gap), self._top, self._base)
+        count = len(rows)
+        self._sources[name].data = {
+            "x": [at + reach * 1.1] * count,
+            "y": places.tolist(),
+            "text": [zone.bodies[i].name for i in rows],
+            "x0": [at + 0.1 * reach] * count,
+            "x1": [at + reach] * count,
+            "y0": middle[rows].tolist(),
+        }
+
+    def _windows(self, study: Study) -> None:
+        """Replace the windows and unfaulted contacts of all facets."""
+        rows: dict[str, list[tuple[Any, ...]]] = {"windows": [], "contacts": []}
+        picks: dict[str, list[tuple[tuple[str, str], bool]]] = {"windows": [], "contacts": []}
+        last = len(self._offsets) - 1
+        for windows, on_plane in ((study.windows, False), (study.single_plane.windows, True)):
+            zone = windows.zone
+            blocks, names = zone.block_names, [body.name for body in zone.bodies]
+            outlines = _outlines(windows, self._offsets, last if on_plane else None, self._pixel)
+            listed = zip(
+                outlines,
+                windows.strand.tolist(),
+                windows.footwall_body.tolist(),
+                windows.hanging_wall_body.tolist(),
+                windows.is_unfaulted.tolist(),
+                windows.area.tolist(),
+                strict=True,
+            )
+            for (xs, ys), strand, a, b, unfaulted, area in listed:
+                kind = "contacts" if unfaulted else "windows"
+                where = "single plane" if on_plane else f"strand {zone.strand_names[strand - 1]}"
+                rows[kind].append(
+                    (xs, ys, f"{names[a]} against {names[b]}", where, area_text(area))
+                )
+                edge = (f"{blocks[strand - 1]}: {names[a]}", f"{blocks[strand]}: {names[b]}")
+                picks[kind].append((edge, on_plane))
+        self._picks = picks
+        for kind, found in rows.items():
+            columns = list(zip(*found, strict=True)) or [()] * 5
+            data = dict(zip(_WINDOW, map(list, columns), strict=True))
+            self._replace(self._sources[kind], data)
+
+    def _section_line(self, distance: float) -> None:
+        if self._study is None:
+            return
+        x = self._offsets + distance - float(self._study.zone.stations[0])
+        self._sources["section"].data = {
+            "x0": x,
+            "y0": np.full(len(x), self._top),
+            "x1": x,
+            "y1": np.full(len(x), self._base),
+        }
+
+    def _draw_mark(self, selection: Selection) -> None:
+        chosen, on_plane = set(selection.edges), set(selection.plane_edges)
+        xs, ys = [], []
+        for kind in ("windows", "contacts"):
+            data = self._sources[kind].data
+            for row, (edge, plane) in enumerate(self._picks[kind]):
+                if edge in (on_plane if plane else chosen):
+                    xs.append([*data["xs"][row], data["xs"][row][0]])
+                    ys.append([*data["ys"][row], data["ys"][row][0]])
+        self._sources["marks"].data = {"xs": xs, "ys": ys}
+
+    def _build(self) -> None:
+        source = self._sources
+        plot = self.figure = base_figure(
+            self._height,
+            title="Strand faces: what touches what on every strand",
+            x_range=Range1d(0, 1),
+            y_range=Range1d(1, 0),
+            x_axis_label="Distance along the fault, m",
+            y_axis_label="Depth, m",
+            outline_line_color=None,
+        )
+        plot.quad(
+            *("left", "right", "top", "bottom"),
+            source=source["frames"],
+            fill_color="#F3F5F7",
+            line_color=palette.RULE,
+        )
+        sand: dict[str, Any] = {
+            "fill_color": palette.BAND_FILL,
+            "line_color": palette.SAND_EDGE,
+            "line_width": 1.4,
+        }
+        plot.patch("x", "y", source=source["footwall bands"], **sand)
+        violet: dict[str, Any] = {
+            "fill_color": palette.ACCENT,
+            "fill_alpha": 0.85,
+            "line_color": palette.ACCENT,
+            "line_width": 1,
+        }
+        joined: dict[str, Any] = {
+            "fill_color": palette.ACCENT_PALE,
+            "fill_alpha": 0.6,
+            "line_color": palette.ACCENT,
+            "line_width": 0.8,
+            "hatch_pattern": "right_diagonal_line",
+            "hatch_color": palette.ACCENT,
+            "hatch_alpha": 0.8,
+            "hatch_scale": 7,
+            "hatch_weight": 1,
+        }
+        contacts = plot.patches("xs", "ys", source=source["contacts"], **joined)
+        windows = plot.patches("xs", "ys", source=source["windows"], **violet)
+        dashed: dict[str, Any] = {"line_color": palette.INK, "line_width": 1.4, "line_dash": [6, 3]}
+        plot.patch("x", "y", source=source["hanging bands"], fill_alpha=0, **dashed)
+        plot.multi_line("xs", "ys", source=source["marks"], line_color=palette.PAPER, line_width=6)
+        plot.multi_line(
+            "xs", "ys", source=source["marks"], line_color=palette.ACCENT_DEEP, line_width=3
+        )
+        ends = ("x0", "y0", "x1", "y1")
+        here: dict[str, Any] = {"line_color": palette.INK, "line_width": 2, "line_dash": "dotdash"}
+        plot.segment(*ends, source=source["section"], **here)
+        for name, align in (("names left", "right"), ("names right", "left")):
+            plot.segment(
+                "x0", "y0", "x1", "y", source=source[name], line_color=palette.QUIET, line_width=0.8
+            )
+            write(plot, source[name], text_align=align, text_font_size=SMALL_SIZE)
+        write(
+            plot,
+            source["titles"],
+            text_align="center",
+            text_font_size=LABEL_SIZE,
+            text_font_style="bold",
+        )
+        shape = one_row(xs=[0.0], ys=[0.0])
+        line = one_row(x0=0.0, y0=0.0, x1=0.0, y1=0.0)
+        add_key(
+            plot,
+            [
+                ("sand on the footwall side", plot.patches("xs", "ys", source=shape, **sand)),
+                (
+                    "sand on the hanging-wall side",
+                    plot.patches("xs", "ys", source=shape, fill_alpha=0, **dashed),
+                ),
+                ("window", plot.patches("xs", "ys", source=shape, **violet)),
+                ("unfaulted contact", plot.patches("xs", "ys", source=shape, **joined)),
+                ("section", plot.segment(*ends, source=line, **here)),
+            ],
+            columns=3,
+        )
+        card = tooltip(("@name", ""), ("on", "@where"), ("area", "@area"))
+        self._make_hoverable((windows, card), (contacts, card))
+        self._make_tappable({"windows": windows, "contacts": contacts})
+
+
+_WINDOW = ("xs", "ys", "name", "where", "area")
+_NAMES = ("x", "y", "text", "x0", "x1", "y0")
+_EMPTY: dict[str, tuple[str, ...]] = {
+    "frames": ("left", "right", "top", "bottom"),
+    "footwall bands": ("x", "y"),
+    "hanging bands": ("x", "y"),
+    "windows": _WINDOW,
+    "contacts": _WINDOW,
+    "marks": ("xs", "ys"),
+    "section": ("x0", "y0", "x1", "y1"),
+    "names left": _NAMES,
+    "names right": _NAMES,
+    "titles": ("x", "y", "text"),
+}
+
+
+def _closed(x: Array, top: Array, base: Array) -> dict[str, Array]:
+    """Return the outlines of bands as one chain of corners with NaN between them.
+
+    Parameters
+    ----------
+    x : (facets, S) array
+    top, base : (facets, bodies, S) arrays
+    """
+    facets, bodies, _ = top.shape
+    across = np.broadcast_to(x[:, np.newaxis, :], top.shape)
+    gap = np.full((facets, bodies, 1), np.nan)
+    xs = np.concatenate([across, across[..., ::-1], gap], axis=-1)
+    ys = np.concatenate([top, base[..., ::-1], gap], axis=-1)
+    return {"x": xs.ravel().astype(np.float32), "y": ys.ravel().astype(np.float32)}
+
+
+def _outlines(
+    windows: Windows, offsets: Array, facet: int | None, pixel: float
+) -> Iterable[tuple[list[float], list[float]]]:
+    """Yield the corners of every window, moved to its facet, without corners nobody can see."""
+    start = float(windows.zone.stations[0])
+    for window, strand in enumerate(windows.strand.tolist()):
+        shift = float(offsets[strand - 1 if facet is None else facet]) - start
+        distance, upper, lower = windows.corners(window)
+        if len(distance) > 4:
+            kept = _visible(distance, np.stack([upper, lower]), 0.35 * pixel)
+            distance, upper, lower = distance[kept], upper[kept], lower[kept]
+        along = (distance + shift).round(2).tolist()
+        yield along + along[::-1], upper.round(2).tolist() + lower[::-1].round(2).tolist()
+
+
+def _visible(x: Array, lines: Array, tolerance: float) -> NDArray[np.intp]:
+    """Return the corners that lines need to look the same within a tolerance, m.
+
+    Parameters
+    ----------
+    x : (S,) array, increasing
+    lines : (n, S) array
+    tolerance : float
+
+    Notes
+    -----
+    Every second corner is dropped where no line bends there by more, a few times over.
+    """
+    kept = np.arange(len(x))
+    for _ in range(_PASSES):
+        if len(kept) < 3:
+            break
+        at, line = x[kept], lines[:, kept]
+        part = (at[1:-1] - at[:-2]) / (at[2:] - at[:-2])
+        straight = line[:, :-2] + part * (line[:, 2:] - line[:, :-2])
+        drop = np.flatnonzero(np.abs(straight - line[:, 1:-1]).max(axis=0) < tolerance) + 1
+        drop = drop[drop % 2 == 1]
+        if not len(drop):
+            break
+        kept = np.delete(kept, drop)
+    return kept
+
+
+def faces_figure(study: Study, distance: float, *, height: int = 460) -> FacesView:
+    """Return the strand faces of a study, with the single plane last.
+
+    Parameters
+    ----------
+    study : Study
+    distance : float
+        Where the section line stands, m along the fault.
+    height : int, default 460
+        Pixels.
+
+    Returns
+    -------
+    FacesView
+        With `figure`, `update(study, distance)`, `mark(selection)`, `picked(source, index)` and
+        `on_pick(callback)`.
+    """
+    return FacesView(study, distance, height)

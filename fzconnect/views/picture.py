@@ -1,0 +1,121 @@
+"""What all pictures share: one figure, sources that can be tapped, marks over the data."""
+
+from __future__ import annotations
+
+from abc import ABC, abstractmethod
+from collections.abc import Callable, Mapping
+from typing import Any
+
+from bokeh.models import ColumnDataSource, GlyphRenderer, HoverTool, TapTool
+from bokeh.plotting import figure
+
+from fzconnect.views.selection import NOTHING, Selection
+
+__all__ = ["Picture"]
+
+
+class Picture(ABC):
+    """A bokeh figure that is built once and then only follows its data.
+
+    Attributes
+    ----------
+    figure : bokeh.plotting.figure
+    tappable : dict of str to bokeh.models.ColumnDataSource
+        Sources whose glyphs can be chosen by a tap, by name; where a tap hits several, the first
+        counts.
+
+    Notes
+    -----
+    Every source is replaced by one assignment of `source.data`, so that a change is one message.
+    """
+
+    figure: figure
+
+    def __init__(self) -> None:
+        self.tappable: dict[str, ColumnDataSource] = {}
+        self._callbacks: list[Callable[[Selection], None]] = []
+        self._shown = NOTHING
+        self._reported = NOTHING
+        self._quiet = False
+
+    @abstractmethod
+    def picked(self, source: str, index: int) -> Selection | None:
+        """Return what a tap on a glyph means.
+
+        Parameters
+        ----------
+        source : str
+            A name in `tappable`.
+        index : int
+            Row of the source.
+
+        Returns
+        -------
+        Selection or None
+            None if the row is not there any more.
+        """
+
+    @abstractmethod
+    def _draw_mark(self, selection: Selection) -> None:
+        """Replace the overlay sources by those of a selection."""
+
+    def mark(self, selection: Selection) -> None:
+        """Mark a selection over the data; `NOTHING` takes the mark away."""
+        if selection != self._reported:
+            self._clear_taps()
+            self._reported = NOTHING
+        self._shown = selection
+        self._draw_mark(selection)
+
+    def on_pick(self, callback: Callable[[Selection], None]) -> None:
+        """Call back with a selection whenever a tap chooses one, or `NOTHING` at an empty place."""
+        if not self._callbacks:
+            # only now: bokeh warns when a figure that Python listens to is written to a file
+            for source in self.tappable.values():
+                source.selected.on_change("indices", self._on_indices)
+        self._callbacks.append(callback)
+
+    def _make_tappable(self, renderers: Mapping[str, GlyphRenderer]) -> None:
+        """Let taps choose glyphs of these renderers; a chosen glyph does not change its look."""
+        for name, renderer in renderers.items():
+            renderer.selection_glyph = None
+            renderer.nonselection_glyph = None
+            self.tappable[name] = renderer.data_source
+        tap = self.figure.select_one(TapTool)
+        tap.renderers = list(renderers.values())
+
+    def _make_hoverable(self, *cards: tuple[GlyphRenderer, str]) -> None:
+        """Give renderers a hover card each."""
+        for renderer, card in cards:
+            tool = HoverTool(renderers=[renderer], tooltips=card, visible=False)
+            self.figure.add_tools(tool)
+
+    def _replace(self, source: ColumnDataSource, data: dict[str, Any]) -> None:
+        """Replace a source's rows; what was tapped in the old rows is forgotten first."""
+        if source.selected.indices:
+            self._quiet = True
+            source.selected.indices = []
+            self._quiet = False
+        source.data = data
+
+    def _clear_taps(self) -> None:
+        self._quiet = True
+        for source in self.tappable.values():
+            if source.selected.indices:
+                source.selected.indices = []
+        self._quiet = False
+
+    def _on_indices(self, _attr: str, _old: object, _new: object) -> None:
+        if self._quiet:
+            return
+        chosen: Selection | None = NOTHING
+        for name, source in self.tappable.items():
+            if source.selected.indices:
+                chosen = self.picked(name, source.selected.indices[0])
+                break
+        # one tap that hits two glyphs arrives as two changes: tell it once
+        if chosen is None or chosen == self._reported:
+            return
+        self._reported = chosen
+        for callback in self._callbacks:
+            callback(chosen)

@@ -1,0 +1,496 @@
+"""The section: blocks, layers, strands and windows across the zone at one distance."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+from bokeh.models import ColumnDataSource, DataRange1d, LinearAxis, LinearColorMapper
+from numpy.typing import NDArray
+
+from fzconnect.views import palette
+from fzconnect.views.look import (
+    LABEL_SIZE,
+    LINE,
+    SMALL_SIZE,
+    add_key,
+    area_text,
+    base_figure,
+    number_text,
+    one_row,
+    relabel,
+    set_title,
+    style_axis,
+    thinned,
+    tooltip,
+    write,
+)
+from fzconnect.views.picture import Picture
+from fzconnect.views.selection import Selection, of_edge, of_node
+
+if TYPE_CHECKING:
+    from fzconnect.geometry import FaultZone, Section
+    from fzconnect.network import Study
+
+__all__ = ["SectionView", "section_figure"]
+
+Array = NDArray[np.float64]
+
+_STRETCHES = (1, 2, 3, 5, 10, 20, 50)
+_WIDE_ENOUGH = 0.32
+"""Part of the depth range that the zone should cover across before it needs no stretching."""
+_BESIDE = 0.22
+"""Part of the depth range shown of the footwall and of the hanging wall."""
+_TOO_SMALL = 1e-6
+_AXES = 132  # px that title, key and axis take from the figure's height
+
+
+class SectionView(Picture):
+    """The section across the zone at one distance along the fault.
+
+    Attributes
+    ----------
+    figure : bokeh.plotting.figure
+    stretch : int
+        How many times distances across the fault are stretched; 1 is equal scale.
+    """
+
+    def __init__(self, study: Study, distance: float, height: int) -> None:
+        super().__init__()
+        self.stretch = 0
+        self._height = height
+        self._zone: FaultZone | None = None
+        self._sources = {name: ColumnDataSource() for name in _EMPTY}
+        for name, columns in _EMPTY.items():
+            self._sources[name].data = {column: [] for column in columns}
+        self._build()
+        self.update(study, distance)
+
+    # ------------------------------------------------------------------ what is drawn
+
+    def update(self, study: Study, distance: float) -> None:
+        """Show another study or another distance, m.
+
+        Raises
+        ------
+        NetworkError
+            If the distance is not on the fault.
+        """
+        zone = study.zone
+        section = zone.at(distance)
+        self._study, self._section = study, section
+        if zone is not self._zone:
+            self._zone = zone
+            self._frame(zone)
+        set_title(self.figure, f"Section at {number_text(distance)} m along the fault")
+        self._layers(zone, section)
+        self._strands(zone, section)
+        self._windows(study, section)
+        self._name_sands(zone, section)
+        self._draw_mark(self._shown)
+
+    def picked(self, source: str, index: int) -> Selection | None:
+        """Return what a tap on a window, a contact or a sand means."""
+        found = self._picks.get(source, ())
+        if index >= len(found):
+            return None
+        if source == "sands":
+            return of_node(found[index])
+        return of_edge(self._study, found[index])
+
+    def _frame(self, zone: FaultZone) -> None:
+        """Set what holds for a zone at every distance: scale, edges and depth range."""
+        depths = np.concatenate([zone.faces[0, 0], zone.faces[-1, 1]])
+        top, base = float(zone.faces.min()), float(zone.faces.max())
+        span = base - top
+        slope = 1.0 / np.tan(np.radians(zone.dip)) if zone.dip < 90.0 else 0.0
+        column = float((depths.max(axis=0) - depths.min(axis=0)).max())
+        across = float(zone.lens_width.sum()) + slope * column
+        fits = [n for n in _STRETCHES if n == 1 or across * n <= 0.8 * span]
+        wide = [n for n in fits if across * n >= _WIDE_ENOUGH * span]
+        stretch = wide[0] if wide else fits[-1]
+        if stretch != self.stretch:
+            self.stretch = stretch
+            self.figure.aspect_scale = float(stretch)
+            scale = "equal scale" if stretch == 1 else f"stretched {stretch} times"
+            self.figure.xaxis[0].axis_label = f"Across the fault, m ({scale})"
+        self._span = (top, base)
+        self._room = 4.0 * span / stretch  # rock drawn beside the zone, past any frame
+        beside = _BESIDE * span / stretch
+        pixel = span / max(1, self._height - _AXES)  # metres that a pixel stands for, about
+        self._pixel = pixel
+        half = 0.5 * (float(zone.lens_width.sum()) + slope * span)
+        names = max(len(name) for name in zone.strand_names)
+        self._upright = _crowded(zone, names, pixel / stretch)
+        above = (16 + 9 * names if self._upright else 30) * pixel
+        below = (62 if zone.strand_count > 1 else 8) * pixel
+        self._sources["frame"].data = {
+            "left": [-half - beside],
+            "right": [half + beside],
+            "top": [top - above],
+            "bottom": [base + below],
+        }
+
+    def _layers(self, zone: FaultZone, section: Section) -> None:
+        """Replace the layers of every block: corners, names and what the hover card tells."""
+        depth = section.boundaries
+        edges = section.extent(self._room)
+        left, right = _sides(section, edges)
+        corners_x = np.stack([left[:, :-1], right[:, :-1], right[:, 1:], left[:, 1:]], axis=-1)
+        corners_y = np.stack([depth[:, :-1], depth[:, :-1], depth[:, 1:], depth[:, 1:]], axis=-1)
+        vsh = np.array([zone.across(zone.vsh, block) for block in range(len(depth))])
+        sand = np.array(zone.is_sand)
+        for name, chosen in (("sands", sand), ("shales", ~sand)):
+            layers = [zone.layer_names[i] for i in np.flatnonzero(chosen)]
+            blocks = [block for block in zone.block_names for _ in layers]
+            self._replace(
+                self._sources[name],
+                {
+                    "xs": np.round(corners_x[:, chosen].reshape(-1, 4), 2).tolist(),
+                    "ys": np.round(corners_y[:, chosen].reshape(-1, 4), 2).tolist(),
+                    "name": layers * len(depth),
+                    "block": blocks,
+                    "vsh": vsh[:, chosen].ravel(),
+                    "top": depth[:, :-1][:, chosen].ravel(),
+                    "base": depth[:, 1:][:, chosen].ravel(),
+                    "thickness": np.diff(depth, axis=1)[:, chosen].ravel(),
+                },
+            )
+        body_of = {
+            layer: body.name for body in zone.bodies for layer in range(body.first, body.last + 1)
+        }
+        sands = [body_of[int(layer)] for layer in np.flatnonzero(sand)]
+        self._picks: dict[str, list[Any]] = {
+            "sands": [f"{b}: {s}" for b in zone.block_names for s in sands]
+        }
+
+    def _strands(self, zone: FaultZone, section: Section) -> None:
+        """Replace the strands' lines, the names above them and the names of the blocks."""
+        top, base = self._span
+        count = zone.strand_count
+        x_top = np.array([float(section.strand_x(k, top)) for k in range(count)])
+        x_base = np.array([float(section.strand_x(k, base)) for k in range(count)])
+        shares = _at(zone, zone.shares, section.distance)
+        tip = np.abs(shares) < _TOO_SMALL
+        reach = 6 * self._pixel
+        lean = section.slope * reach
+        lines: dict[str, Any] = {
+            "x0": x_top - lean,
+            "y0": np.full(count, top - reach),
+            "x1": x_base + lean,
+            "y1": np.full(count, base + reach),
+            "name": list(zone.strand_names),
+            "throw": _at(zone, zone.strand_throw, section.distance),
+            "share": 100.0 * shares,
+        }
+        for name, chosen in (("strands", ~tip), ("tips", tip)):
+            self._sources[name].data = {
+                key: [v for v, keep in zip(value, chosen, strict=True) if keep]
+                if isinstance(value, list)
+                else value[chosen]
+                for key, value in lines.items()
+            }
+        self._sources["strand names"].data = {
+            "x": x_top - 1.6 * lean,
+            "y": np.full(count, top - 1.6 * reach),
+            "text": list(zone.strand_names),
+            "angle": [np.pi / 2 if self._upright else 0.0] * count,
+            "align": ["left" if self._upright else "center"] * count,
+            "baseline": ["middle" if self._upright else "bottom"] * count,
+        }
+        middle = 0.5 * (x_base[:-1] + x_base[1:]) + lean
+        gap = 12 * self._pixel / self.stretch
+        left, right = float(x_base[0] + lean - gap), float(x_base[-1] + lean + gap)
+        self._sources["block names"].data = {
+            "x": [left, *middle.tolist(), right],
+            "y": [base + 1.6 * reach] * (count + 1),
+            "text": list(zone.block_names),
+            "angle": [0.0, *[np.pi / 2] * (count - 1), 0.0],
+            "align": ["right", *["right"] * (count - 1), "left"],
+            "baseline": ["top", *["middle"] * (count - 1), "top"],
+        }
+
+    def _windows(self, study: Study, section: Section) -> None:
+        """Replace the windows and unfaulted contacts that are open at this distance."""
+        windows, zone = study.windows, study.zone
+        cuts = windows.cut(section.distance)
+        blocks = zone.block_names
+        rows: dict[str, list[tuple[Any, ...]]] = {"windows": [], "contacts": []}
+        picks: dict[str, list[Any]] = {"windows": [], "contacts": []}
+        for window, top, base in cuts:
+            strand = int(windows.strand[window]) - 1
+            lower, upper = windows.footwall_sand(window), windows.hanging_wall_sand(window)
+            kind = "contacts" if windows.is_unfaulted[window] else "windows"
+            offset = section.strand_positions[strand]
+            x0 = offset + (top - section.reference_depth) * section.slope
+            x1 = offset + (base - section.reference_depth) * section.slope
+            rows[kind].append(
+                (
+                    x0,
+                    top,
+                    x1,
+                    base,
+                    f"{lower} against {upper}",
+                    zone.strand_names[strand],
+                    area_text(windows.area[window]),
+                )
+            )
+            picks[kind].append((f"{blocks[strand]}: {lower}", f"{blocks[strand + 1]}: {upper}"))
+        for kind, found in rows.items():
+            columns = list(zip(*found, strict=True)) or [()] * 7
+            names = ("x0", "y0", "x1", "y1", "name", "strand", "area")
+            data = {name: list(column) for name, column in zip(names, columns, strict=True)}
+            self._replace(self._sources[kind], data)
+        self._picks |= picks
+
+    def _name_sands(self, zone: FaultZone, section: Section) -> None:
+        """Label sand bodies on both edges of the picture, the thickest where room is short."""
+        first = [body.first for body in zone.bodies]
+        past = [body.last + 1 for body in zone.bodies]
+        for axis, block in zip(self._name_axes, (0, -1), strict=True):
+            depth = section.boundaries[block]
+            middle, thick = 0.5 * (depth[first] + depth[past]), depth[past] - depth[first]
+            kept = thinned(middle, thick, 0.95 * LINE * self._pixel)
+            relabel(axis, {float(round(middle[i], 2)): zone.bodies[i].name for i in kept})
+
+    def _draw_mark(self, selection: Selection) -> None:
+        zone, section = self._study.zone, self._section
+        chosen = set(selection.edges)
+        marks: dict[str, list[Any]] = {"x0": [], "y0": [], "x1": [], "y1": []}
+        for kind in ("windows", "contacts"):
+            data = self._sources[kind].data
+            rows = [row for row, edge in enumerate(self._picks[kind]) if edge in chosen]
+            for name, column in marks.items():
+                column.extend(data[name][row] for row in rows)
+        self._sources["marks"].data = {**marks}
+        edges = section.extent(self._room)
+        xs, ys = [], []
+        for node in selection.nodes:
+            block_name, _, sand = node.partition(": ")
+            body = next((body for body in zone.bodies if body.name == sand), None)
+            if body is None or block_name not in zone.block_names:
+                continue
+            block = zone.block_names.index(block_name)
+            x_top, y_top = section.outline(block, body.first, edges)
+            x_base, y_base = section.outline(block, body.last, edges)
+            xs.append([*x_top[:2].tolist(), *x_base[2:].tolist(), float(x_top[0])])
+            ys.append([*y_top[:2].tolist(), *y_base[2:].tolist(), float(y_top[0])])
+        self._sources["marked sands"].data = {"xs": xs, "ys": ys}
+
+    # ------------------------------------------------------------------ built once
+
+    def _build(self) -> None:
+        source = self._sources
+        x_range = DataRange1d(range_padding=0)
+        y_range = DataRange1d(flipped=True, range_padding=0)
+        plot = self.figure = base_figure(
+            self._height,
+            x_range=x_range,
+            y_range=y_range,
+            match_aspect=True,
+            y_axis_label="Depth, m",
+            x_axis_label="Across the fault, m",
+        )
+        self._name_axes = (LinearAxis(), LinearAxis())
+        for axis in self._name_axes:
+            style_axis(axis)
+            axis.update(axis_line_color=None, major_tick_out=4, major_tick_in=0)
+        plot.left = [self._name_axes[0], *plot.left]  # names stand next to the rock
+        plot.right = [self._name_axes[1], *plot.right]
+        frame = plot.quad(
+            "left", "right", "top", "bottom", source=source["frame"], fill_alpha=0, line_alpha=0
+        )
+        x_range.renderers = [frame]
+        y_range.renderers = [frame]
+        shades = {
+            "shales": (palette.SHALES, palette.SHALE_SCALE, palette.SHALE_EDGE, None),
+            "sands": (palette.SANDS, palette.SAND_SCALE, palette.SAND_EDGE, "dot"),
+        }
+        layers = {}
+        for name, (colours, (low, high), edge, hatch) in shades.items():
+            mapper = LinearColorMapper(palette=list(colours), low=low, high=high)
+            style: dict[str, Any] = {
+                "line_color": edge,
+                "line_width": 0.8 if hatch else 0.4,
+                "hatch_pattern": hatch,
+                "hatch_color": palette.SAND_EDGE,
+                "hatch_alpha": 0.55,
+                "hatch_scale": 7,
+                "hatch_weight": 1,
+            }
+            layers[name] = plot.patches(
+                "xs",
+                "ys",
+                source=source[name],
+                fill_color={"field": "vsh", "transform": mapper},
+                **style,
+            )
+            layers[f"{name} key"] = plot.patches(
+                "xs",
+                "ys",
+                source=one_row(xs=[0.0], ys=[0.0]),
+                fill_color=colours[len(colours) // 3],
+                **style,
+            )
+        plot.multi_line(
+            "xs", "ys", source=source["marked sands"], line_color=palette.PAPER, line_width=5
+        )
+        plot.multi_line(
+            "xs",
+            "ys",
+            source=source["marked sands"],
+            line_color=palette.ACCENT_DEEP,
+            line_width=2.5,
+        )
+        ends = ("x0", "y0", "x1", "y1")
+        strands = plot.segment(
+            *ends, source=source["strands"], line_color=palette.INK, line_width=2.2
+        )
+        tips = plot.segment(
+            *ends,
+            source=source["tips"],
+            line_color=palette.INK,
+            line_alpha=0.55,
+            line_width=1.2,
+            line_dash=[5, 4],
+        )
+        plot.segment(
+            *ends, source=source["contacts"], line_color=palette.PAPER, line_width=5, line_alpha=0.7
+        )
+        contacts = plot.segment(
+            *ends,
+            source=source["contacts"],
+            line_color=palette.ACCENT,
+            line_width=3,
+            line_dash=[2, 3],
+        )
+        plot.segment(*ends, source=source["windows"], line_color=palette.PAPER, line_width=9)
+        windows = plot.segment(
+            *ends, source=source["windows"], line_color=palette.ACCENT, line_width=6
+        )
+        plot.segment(*ends, source=source["marks"], line_color=palette.PAPER, line_width=15)
+        plot.segment(*ends, source=source["marks"], line_color=palette.ACCENT_DEEP, line_width=10)
+        for name, colour, weight in (
+            ("strand names", palette.INK, "bold"),
+            ("block names", palette.QUIET, "normal"),
+        ):
+            write(
+                plot,
+                source[name],
+                angle="angle",
+                text_align="align",
+                text_baseline="baseline",
+                text_font_size=LABEL_SIZE if weight == "bold" else SMALL_SIZE,
+                text_font_style=weight,
+                text_color=colour,
+            )
+        add_key(
+            plot,
+            [
+                ("sand, darker with clay", layers["sands key"]),
+                ("shale", layers["shales key"]),
+                ("strand", strands),
+                ("window", _key_line(plot, palette.ACCENT, 6)),
+                ("unfaulted contact", _key_line(plot, palette.ACCENT, 3, [2, 3])),
+                ("no strand here (tip)", _key_line(plot, palette.QUIET, 1.2, [5, 4])),
+            ],
+            columns=3,
+        )
+        card = tooltip(
+            ("@name", "in the @block"),
+            ("vsh", "@vsh{0.00}"),
+            ("thickness", "@thickness{0.0} m"),
+            ("depth", "@top{0} to @base{0} m"),
+        )
+        window = tooltip(
+            ("@name", ""),
+            ("strand", "@strand"),
+            ("depth here", "@y0{0.0} to @y1{0.0} m"),
+            ("area along the fault", "@area"),
+        )
+        strand = tooltip(
+            ("strand @name", ""),
+            ("throw here", "@throw{0.0} m"),
+            ("share here", "@share{0} %"),
+        )
+        self._make_hoverable(
+            (layers["sands"], card),
+            (layers["shales"], card),
+            (windows, window),
+            (contacts, window),
+            (strands, strand),
+            (tips, strand),
+        )
+        self._make_tappable({"windows": windows, "contacts": contacts, "sands": layers["sands"]})
+
+
+_SEGMENT = ("x0", "y0", "x1", "y1")
+_LAYER = ("xs", "ys", "name", "block", "vsh", "top", "base", "thickness")
+_TEXT = ("x", "y", "text", "angle", "align", "baseline")
+_EMPTY: dict[str, tuple[str, ...]] = {
+    "frame": ("left", "right", "top", "bottom"),
+    "sands": _LAYER,
+    "shales": _LAYER,
+    "strands": (*_SEGMENT, "name", "throw", "share"),
+    "tips": (*_SEGMENT, "name", "throw", "share"),
+    "windows": (*_SEGMENT, "name", "strand", "area"),
+    "contacts": (*_SEGMENT, "name", "strand", "area"),
+    "strand names": _TEXT,
+    "block names": _TEXT,
+    "marks": _SEGMENT,
+    "marked sands": ("xs", "ys"),
+}
+
+
+def _key_line(plot: Any, colour: str, width: float, dash: Any = "solid") -> Any:
+    """Return a line that only the key shows."""
+    source = one_row(x0=0.0, y0=0.0, x1=0.0, y1=0.0)
+    return plot.segment(
+        *_SEGMENT, source=source, line_color=colour, line_width=width, line_dash=dash
+    )
+
+
+def _sides(section: Section, edges: tuple[float, float]) -> tuple[Array, Array]:
+    """Return x, m, of the left and right end of every boundary in every block: (N + 1, U + 1)."""
+    depth, positions = section.boundaries, section.strand_positions[:, np.newaxis]
+    lean = (depth - section.reference_depth) * section.slope
+    left = np.vstack([np.full(depth.shape[1], edges[0]), positions + lean[1:]])
+    right = np.vstack([positions + lean[:-1], np.full(depth.shape[1], edges[1])])
+    return left, right
+
+
+def _at(zone: FaultZone, values: Array, distance: float) -> Array:
+    """Return (N, S) values of the strands at a distance: (N,) array."""
+    return np.array([np.interp(distance, zone.stations, row) for row in values])
+
+
+def _crowded(zone: FaultZone, letters: int, metres_per_pixel: float) -> bool:
+    """Tell whether strand names written across would run into each other."""
+    if zone.strand_count == 1:
+        return False
+    return bool(zone.lens_width.min() / metres_per_pixel < 8 * letters + 2)
+
+
+def section_figure(study: Study, distance: float, *, height: int = 540) -> SectionView:
+    """Return the section across a study's zone at a distance along the fault.
+
+    Parameters
+    ----------
+    study : Study
+    distance : float
+        m along the fault.
+    height : int, default 540
+        Pixels.
+
+    Returns
+    -------
+    SectionView
+        With `figure`, `update(study, distance)`, `mark(selection)`, `picked(source, index)` and
+        `on_pick(callback)`.
+
+    Raises
+    ------
+    NetworkError
+        If the distance is not on the fault.
+    """
+    return SectionView(study, distance, height)

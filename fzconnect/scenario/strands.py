@@ -194,6 +194,9 @@ class Strands(Part):
         return tuple(sorted({s for share in self.shares or () for s, _ in share.points}))
 
     def _weights_at(self, distance: float) -> tuple[float, ...]:
+        if not math.isfinite(distance):
+            msg = f"distance along the fault: found {show(distance)}, expected a finite number"
+            raise ScenarioError(msg)
         return tuple(share.weight_at(distance) for share in self.shares or ())
 
     def split_at(self, distance: float) -> tuple[float, ...]:

@@ -13,7 +13,12 @@ from fzconnect.errors import ScenarioError, nearest
 from fzconnect.scenario.quantity import show
 from fzconnect.scenario.textfile import read_text
 
-__all__ = ["Table", "read_table", "write_table"]
+__all__ = ["MOST_ROWS", "Table", "read_table", "write_table"]
+
+#: Rows that are read at all; layers and cutoffs have tighter limits.
+MOST_ROWS = 20_000
+
+_MOST_COLUMNS = 100
 
 # Words that float() understands are numbers too: the models refuse them as not finite.
 _NUMBER = re.compile(
@@ -102,6 +107,7 @@ def _cells(text: str, path: Path) -> tuple[list[list[str]], list[int]]:
     body = text.lstrip()
     skipped = text[: len(text) - len(body)].count("\n")
     _check_separator(body.splitlines()[0], path, skipped + 1)
+    _check_size(body, path)
     try:
         # Cells are read as text: only then can a message show what really stands there.
         frame = pd.read_csv(
@@ -139,6 +145,18 @@ def _check_separator(header: str, path: Path, line: int) -> None:
                 "save it as CSV with commas between columns and points in numbers"
             )
             raise ScenarioError(msg)
+
+
+def _check_size(body: str, path: Path) -> None:
+    """Refuse, before the slow part, what is a table of something else."""
+    rows = len(body.splitlines())
+    if rows > MOST_ROWS:
+        msg = f"{path}: has {rows} rows, expected at most {MOST_ROWS}"
+        raise ScenarioError(msg)
+    columns = body.splitlines()[0].count(",") + 1
+    if columns > _MOST_COLUMNS:
+        msg = f"{path}, row 1: has {columns} columns, expected at most {_MOST_COLUMNS}"
+        raise ScenarioError(msg)
 
 
 def _check_header(

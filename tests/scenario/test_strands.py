@@ -138,6 +138,12 @@ def test_with_split_at_gives_the_shares_asked_for(
     assert strands.with_split_at(distance, split).split_at(distance) == pytest.approx(split)
 
 
+def test_a_distance_that_is_no_number_has_no_split() -> None:
+    message = "distance along the fault: found nan, expected a finite number"
+    with pytest.raises(ScenarioError, match=message):
+        _shares(A=[(0, 1)]).split_at(float("nan"))
+
+
 def test_split_lengths_are_checked() -> None:
     message = r"Strands\.split: found 2 shares for 3 strands, expected one a strand"
     with pytest.raises(ScenarioError, match=message):

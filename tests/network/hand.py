@@ -1,7 +1,7 @@
 """A network small enough to work everything out by hand.
 
-Shale 100, S1 20, shale 10, S2 20, shale 100 m from 1000 m down; two strands of 12 and 18 m; vertical,
-1 m along the fault, so that areas are heights. Depths below 1000 m:
+Shale 100, S1 20, shale 10, S2 20, shale 100 m from 1000 m down; two strands of 12 and 18 m. The
+strands are vertical and 1 m long, so that areas are heights. Depths below 1000 m:
 
               footwall    lens 1      hanging wall
     S1        100-120     112-132     130-150

@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import argparse
 import importlib.util
-import os
 import re
 import subprocess
 import sys
@@ -18,7 +17,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from fzconnect import __version__
-from fzconnect.errors import FzconnectError, OutputError
+from fzconnect.errors import FzconnectError
 
 if TYPE_CHECKING:
     from fzconnect.network import Study
@@ -294,10 +293,6 @@ def _new(options: argparse.Namespace) -> int:
 
     folder: Path = options.folder
     files = starter_files()
-    # a scenario is the user's own work as soon as it is written, so nothing is ever replaced
-    if os.path.lexists(folder) and (not folder.is_dir() or any(folder.iterdir())):
-        msg = f"{folder}: is there already, expected a new or an empty folder"
-        raise OutputError(msg)
     create_folder(folder, files)
     for name in files:
         print(f"wrote {folder / name}")

@@ -187,6 +187,20 @@ class FaultZone:
         part = float(np.clip(self.shares[:block].sum(axis=0).mean(), 0.0, 1.0))
         return np.asarray(values[0] + part * (values[1] - values[0]))
 
+    def has_same_walls(self, other: FaultZone) -> bool:
+        """Tell whether footwall, hanging wall and dip are those of `other`, whatever is between."""
+        columns = (
+            (self.stations, other.stations),
+            (self.footwall, other.footwall),
+            (self.hanging_wall, other.hanging_wall),
+            (self.vsh, other.vsh),
+        )
+        return (
+            self.dip == other.dip
+            and self.bodies == other.bodies
+            and all(np.array_equal(mine, its) for mine, its in columns)
+        )
+
     def body_faces(self) -> tuple[Array, Array]:
         """Return tops and bases, m, of the sand bodies on every face: two (N, 2, A, S) arrays."""
         first = [body.first for body in self.bodies]

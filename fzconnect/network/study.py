@@ -104,6 +104,9 @@ class Study:
             sentence = coverage_warning(zone)
             if sentence:
                 found.append(f"{label}: {sentence}")
+        unused = _unused_parts(self.scenario)
+        if unused:
+            found.append(f"read and checked, but no answer here uses it: {', '.join(unused)}")
         return tuple(found)
 
     @cached_property
@@ -185,10 +188,22 @@ class Study:
         )
 
 
-def study(scenario: Scenario) -> Study:
-    """Return a scenario's windows, network and answers, beside those of a single plane."""
+def study(scenario: Scenario, *, like: Study | None = None) -> Study:
+    """Return a scenario's windows, network and answers, beside those of a single plane.
+
+    Parameters
+    ----------
+    scenario : Scenario
+    like : Study, optional
+        An earlier study: its single plane is taken over if it has the same blocks at the same
+        stations, as it has while only the throw split changes.
+    """
     zone = FaultZone.from_scenario(scenario)
-    answer, single = Answer.from_zone(zone), Answer.from_zone(zone.single_plane())
+    answer = Answer.from_zone(zone)
+    if like is not None and zone.has_same_walls(like.zone):
+        single = like.single_plane
+    else:
+        single = Answer.from_zone(zone.single_plane())
     return Study(
         scenario=scenario,
         zone=zone,
@@ -197,6 +212,13 @@ def study(scenario: Scenario) -> Study:
         single_plane=single,
         pairs=tuple(_pairs(answer.network, single.network)),
     )
+
+
+def _unused_parts(scenario: Scenario) -> list[str]:
+    """Return the tables and keys of a scenario that juxtaposition alone does not look at."""
+    tables = ("fault_rock", "fluid", "flow", "uncertainty", "evidence")
+    unused = [f"[{name}]" for name in tables if getattr(scenario, name)]
+    return [*unused, "strands.conduits"] if scenario.strands.conduits else unused
 
 
 def _pairs(network: FaultNetwork, single: FaultNetwork) -> list[Pair]:

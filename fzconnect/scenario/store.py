@@ -13,7 +13,14 @@ from pathlib import Path
 
 from fzconnect.errors import OutputError
 
-__all__ = ["MARKER", "write_file", "write_files", "write_folder"]
+__all__ = [
+    "MARKER",
+    "check_folder",
+    "create_folder",
+    "write_file",
+    "write_files",
+    "write_folder",
+]
 
 #: File that marks a folder as written by fzconnect; it lists the files.
 MARKER = ".fzconnect-output"
@@ -80,6 +87,53 @@ def write_files(folder: Path, files: Mapping[str, str | bytes]) -> tuple[Path, .
     return tuple(folder / name for name in files)
 
 
+def check_folder(out: str | os.PathLike[str], *, overwrite: bool = False) -> bool:
+    """Return whether a folder of results is there already, if `write_folder` may write it.
+
+    For refusing before long work what would be refused after it.
+
+    Raises
+    ------
+    OutputError
+        If it is a file, or holds files and was not written by fzconnect.
+    """
+    folder = Path(out)
+    with _said(folder):
+        if not folder.is_dir():
+            if os.path.lexists(folder):
+                msg = f"{folder}: is a file, expected a folder"
+                raise OutputError(msg)
+            return False
+        if not overwrite and _written_before(folder) is None and any(folder.iterdir()):
+            msg = (
+                f"{folder}: is not empty and was not written by fzconnect, expected a new or "
+                "empty folder, or leave to overwrite it"
+            )
+            raise OutputError(msg)
+    return True
+
+
+def create_folder(folder: str | os.PathLike[str], files: Mapping[str, str | bytes]) -> Path:
+    """Write files that are the user's own from now on into a new or an empty folder.
+
+    Raises
+    ------
+    OutputError
+        If the folder holds anything or cannot be written.
+    """
+    target = Path(folder)
+    _check_names(files, target)
+    with _said(target):
+        if not os.path.lexists(target):
+            _make_folder(target, files)
+        elif not target.is_dir() or any(target.iterdir()):
+            msg = f"{target}: is there already, expected a new or an empty folder"
+            raise OutputError(msg)
+        else:
+            write_files(target, files)
+    return target
+
+
 def write_folder(
     out: str | os.PathLike[str], files: Mapping[str, str | bytes], *, overwrite: bool = False
 ) -> Path:
@@ -112,21 +166,12 @@ def write_folder(
     marked = {**files, MARKER: json.dumps({"files": sorted(files)}, indent=1) + "\n"}
     stale: set[str] = set()
     with _said(folder):
-        if folder.is_dir():
+        if not check_folder(folder, overwrite=overwrite):
+            _make_folder(folder, marked)
+        else:
             old = _written_before(folder)
-            if old is None and not overwrite and any(folder.iterdir()):
-                msg = (
-                    f"{folder}: is not empty and was not written by fzconnect, expected a new or "
-                    "empty folder, or leave to overwrite it"
-                )
-                raise OutputError(msg)
             write_files(folder, marked)
             stale = (old or set()) - set(files)
-        elif os.path.lexists(folder):
-            msg = f"{folder}: is a file, expected a folder"
-            raise OutputError(msg)
-        else:
-            _make_folder(folder, marked)
     for path in sorted(folder / name for name in stale):
         try:
             path.unlink(missing_ok=True)

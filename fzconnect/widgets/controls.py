@@ -1,0 +1,247 @@
+"""The workbench's controls: folding groups of ipywidgets that speak `Params`."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import replace
+from typing import TYPE_CHECKING, Any
+
+from ipywidgets import (
+    Accordion,
+    Button,
+    Dropdown,
+    FloatSlider,
+    IntSlider,
+    Layout,
+    Text,
+    VBox,
+    Widget,
+)
+
+from fzconnect.widgets.params import Params
+
+if TYPE_CHECKING:
+    from fzconnect.scenario import Scenario
+    from fzconnect.widgets.splitbar import SplitBar
+
+__all__ = ["MOST_STRANDS", "Controls", "close_widget"]
+
+MOST_STRANDS = 8
+"""Strands that the throw-split bar has room for."""
+
+_NO_PAIR = "none"
+_FULL = Layout(width="auto")
+_STYLE = {"description_width": "7.5em"}
+
+
+class Controls:
+    """Sliders, boxes and menus; every change by hand is one call with new `Params`.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        Sets the ranges: distances along the fault, names of the strands.
+    sands : sequence of str
+        Names of the sand bodies, for choosing a pair.
+    bar : SplitBar
+        The throw-split bar, whose number boxes are placed here.
+    params : Params
+        What to show first.
+
+    Attributes
+    ----------
+    widget : ipywidgets.VBox
+    params : Params
+        What the controls say now.
+    pathway : ipywidgets.Dropdown
+        Steps through the pathways of the chosen pair; filled by the workbench.
+    folder, export : ipywidgets.Text, ipywidgets.Button
+        Where to write the study, and the button that does.
+    """
+
+    def __init__(
+        self, scenario: Scenario, sands: Sequence[str], bar: SplitBar, params: Params
+    ) -> None:
+        self.params = params
+        self._scenario, self._bar = scenario, bar
+        self._listeners: list[Callable[[Params, bool], None]] = []
+        self._writing = False
+        first, last = scenario.throw.distances[0], scenario.throw.distances[-1]
+        most = max(MOST_STRANDS, scenario.strands.count)
+        self.count = IntSlider(
+            value=params.count, min=1, max=most, description="Strand count", **_slider()
+        )
+        self.factor = FloatSlider(
+            value=params.throw_factor,
+            min=0.0,
+            max=2.0,
+            step=0.05,
+            description="Throw factor",
+            readout_format=".2f",
+            **_slider(),
+        )
+        self.distance = FloatSlider(
+            value=params.distance,
+            min=first,
+            max=last,
+            step=(last - first) / 200,
+            description="Distance, m",
+            readout_format=".0f",
+            **_slider(),
+        )
+        self.own_split = Button(
+            description="Scenario's own split",
+            tooltip="Forget the shares set by hand",
+            layout=_FULL,
+        )
+        menu = {"style": _STYLE, "layout": _FULL}
+        self.upper = Dropdown(options=[_NO_PAIR, *sands], description="Hanging wall", **menu)
+        self.lower = Dropdown(options=[_NO_PAIR, *sands], description="Footwall", **menu)
+        self.pathway = Dropdown(options=[("choose a pair", -1)], description="Pathway", **menu)
+        self.clear = Button(description="Mark nothing", layout=_FULL)
+        self.folder = Text(value="study", description="Folder", continuous_update=False, **menu)
+        self.export = Button(
+            description="Write tables, graph, report",
+            tooltip="Studies the scenario as it stands and writes everything to the folder",
+            layout=_FULL,
+        )
+        self.widget = VBox(
+            [
+                _group("Fault zone", self.count, self.factor),
+                _group("Throw split, %", bar.boxes, self.own_split),
+                _group("Section", self.distance),
+                _group("Sand pair and pathways", self.upper, self.lower, self.pathway, self.clear),
+                _group("Take along", self.folder, self.export, is_open=False),
+            ],
+            layout=Layout(flex="0 1 300px", min_width="260px"),
+        )
+        self._handles: list[tuple[Widget, Callable[..., None]]] = []
+        for control in (self.count, self.factor, self.distance, self.upper, self.lower):
+            control.observe(self._on_control, names=["value"])
+            self._handles.append((control, self._on_control))
+        self.own_split.on_click(self._on_own_split)
+        self._stop_bar = bar.on_change(self._on_split)
+        self.show(params)
+
+    def on_change(self, callback: Callable[[Params, bool], None]) -> None:
+        """Call `callback(params, final)` for every change by hand.
+
+        `final` is False while a joint of the bar is being dragged.
+        """
+        self._listeners.append(callback)
+
+    def show(self, params: Params) -> None:
+        """Set every control to `params` without calling back.
+
+        Raises
+        ------
+        ScenarioError
+            If the shares are impossible at the distance; the controls then stay as they are.
+        """
+        strands = params.strands(self._scenario)
+        shares = strands.split_at(params.distance)
+        # a strand with its tip here has no share to edit, unless a hand has just closed it
+        tips = [
+            share == 0.0 and strands.shares is not None and params.split is None for share in shares
+        ]
+        wanted = (
+            (self.count, params.count),
+            (self.factor, params.throw_factor),
+            (self.distance, params.distance),
+            (self.upper, params.hanging_wall_sand or _NO_PAIR),
+            (self.lower, params.footwall_sand or _NO_PAIR),
+        )
+        self._writing = True
+        try:
+            for control, value in wanted:
+                if control.value != value:
+                    control.value = value
+            if (tuple(self._bar.names), self._bar.shares) != (strands.names, shares):
+                self._bar.set(strands.names, shares, tips)
+            self.own_split.disabled = params.split is None
+            self.params = params
+        finally:
+            self._writing = False
+
+    def set_pathways(self, labels: Sequence[str]) -> None:
+        """Fill the menu of pathways; an empty list disables it."""
+        self._writing = True
+        try:
+            self.pathway.disabled = not labels
+            self.pathway.options = [(label, rank) for rank, label in enumerate(labels)] or [
+                ("none", -1)
+            ]
+        finally:
+            self._writing = False
+
+    @property
+    def is_writing(self) -> bool:
+        """Whether the controls are being set from code, so that observers should keep still."""
+        return self._writing
+
+    def close(self) -> None:
+        """Stop listening and free every widget; safe to call again."""
+        for control, handler in self._handles:
+            control.unobserve(handler, names=["value"])
+        self._handles.clear()
+        self._stop_bar()
+        self._listeners.clear()
+        close_widget(self.widget)
+
+    def _on_control(self, change: dict[str, Any]) -> None:
+        if self._writing:
+            return
+        params = replace(
+            self.params,
+            count=self.count.value,
+            throw_factor=round(self.factor.value, 10),
+            distance=self.distance.value,
+            hanging_wall_sand=_sand(self.upper),
+            footwall_sand=_sand(self.lower),
+        )
+        if params.count != self.params.count:
+            # shares for another number of strands mean nothing
+            params = replace(params, split=None)
+        # a slider may be on the move: the scheduler finds out when the hand rests
+        self._tell(params, final=False)
+
+    def _on_split(self, shares: tuple[float, ...], final: bool) -> None:
+        if not self._writing:
+            changed = replace(self.params, split=shares, split_distance=self.params.distance)
+            self._tell(changed, final)
+
+    def _on_own_split(self, _button: Button) -> None:
+        self._tell(replace(self.params, split=None), final=True)
+
+    def _tell(self, params: Params, final: bool) -> None:
+        self.params = params
+        for listener in tuple(self._listeners):
+            listener(params, final)
+
+
+def _sand(menu: Dropdown) -> str | None:
+    return None if menu.value == _NO_PAIR else str(menu.value)
+
+
+def _slider() -> dict[str, Any]:
+    return {"style": _STYLE, "layout": _FULL, "continuous_update": True}
+
+
+def _group(title: str, *children: Widget, is_open: bool = True) -> Accordion:
+    """Return a folding group of controls."""
+    return Accordion(
+        [VBox(children, layout=Layout(width="100%"))],
+        titles=(title,),
+        selected_index=0 if is_open else None,
+    )
+
+
+def close_widget(widget: Widget) -> None:
+    """Close a widget with its children, layouts and styles, which `close` alone leaves behind."""
+    for child in getattr(widget, "children", ()):
+        close_widget(child)
+    for part in ("style", "layout"):
+        owned = getattr(widget, part, None)
+        if isinstance(owned, Widget):
+            owned.close()
+    widget.close()

@@ -1,0 +1,302 @@
+"""The workbench: controls on the left, linked pictures on the right, the strip above both."""
+
+from __future__ import annotations
+
+import logging
+from collections.abc import Callable, Mapping
+from html import escape
+from typing import TYPE_CHECKING, Any
+
+from bokeh.layouts import column, row
+from ipywidgets import HTML, HBox, Layout, VBox
+
+from fzconnect.errors import FzconnectError
+from fzconnect.network import study
+from fzconnect.network.export import CAUTION
+from fzconnect.views.faces import faces_figure
+from fzconnect.views.pairmatrix import pair_matrix_figure
+from fzconnect.views.pathgraph import pathway_graph_figure
+from fzconnect.views.section import section_figure
+from fzconnect.views.selection import NOTHING, Selection, of_pair, of_pathway, renewed
+from fzconnect.views.strip import STRIP_STYLE, strip_html
+from fzconnect.widgets.controls import MOST_STRANDS, Controls, close_widget
+from fzconnect.widgets.pane import FigurePane, show
+from fzconnect.widgets.params import Params
+from fzconnect.widgets.scheduler import Scheduler
+from fzconnect.widgets.splitbar import SplitBar
+
+if TYPE_CHECKING:
+    from fzconnect.network import Pathway, Study
+    from fzconnect.scenario import Scenario
+
+__all__ = ["Workbench", "workbench"]
+
+_log = logging.getLogger(__name__)
+
+_STYLE = f"""<style>{STRIP_STYLE}
+.fz-title {{font: 600 18px/1.4 system-ui, sans-serif; color: #2B2733;}}
+.fz-caution, .fz-marked, .fz-status {{font: 13px/1.4 system-ui, sans-serif; color: #514B5E;}}
+.fz-status.fz-trouble {{color: #2B2733; background: #FFF4D6; border-left: 4px solid #8A6100;
+  padding: 4px 10px;}}
+</style>"""
+
+_PATHWAYS = 6
+"""Pathways offered for a chosen pair."""
+
+
+class Workbench:
+    """A live study of one scenario for a notebook cell.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        Where the controls start; it is not changed.
+
+    Attributes
+    ----------
+    scenario : Scenario
+        The scenario with what the controls ask for.
+    study : Study
+        Its study: what the pictures show.
+
+    Notes
+    -----
+    One path only: control, `Params`, scheduler, study, pictures. What cannot be studied (a throw
+    that leaves the column, say) is told in the status line, and the pictures keep the last study
+    that could.
+    """
+
+    def __init__(self, scenario: Scenario) -> None:
+        self._base = scenario
+        self.study: Study = study(scenario)
+        params = Params.from_scenario(scenario)
+        self._shown = params
+        self._selection = NOTHING
+        self._pathways: list[Pathway] = []
+        self._closed = False
+
+        names = scenario.strands.names
+        self.bar = SplitBar(names, scenario.strands.split_at(params.distance), most=_most(scenario))
+        self.controls = Controls(scenario, self.study.network.sands, self.bar, params)
+        self.section = section_figure(self.study, params.distance, height=520)
+        self.faces = faces_figure(self.study, params.distance)
+        self.graph = pathway_graph_figure(self.study)
+        self.matrix = pair_matrix_figure(self.study)
+        self._pictures = (self.section, self.faces, self.graph, self.matrix)
+        self.pane = FigurePane(self._arranged())
+        self.bar.batch = self.pane.batch
+
+        self.strip = HTML(layout=Layout(width="100%"))
+        self.marked = HTML(layout=Layout(width="100%"))
+        self.status = HTML(layout=Layout(width="100%"))
+        self.widget = self._laid_out()
+
+        self._scheduler: Scheduler[Params] = Scheduler(
+            self._follow, self._settle, on_error=self._report
+        )
+        self.controls.on_change(lambda params, final: self._scheduler.request(params, final=final))
+        self.controls.pathway.observe(self._guarded(self._on_pathway), names=["value"])
+        self.controls.clear.on_click(self._guarded(lambda _: self.choose(NOTHING)))
+        self.controls.export.on_click(self._guarded(lambda _: self._export()))
+        for picture in self._pictures:
+            picture.on_pick(self._guarded(self.choose))
+        self._tell()
+
+    @property
+    def scenario(self) -> Scenario:
+        """The scenario with what the controls ask for."""
+        return self._shown.apply(self._base)
+
+    def choose(self, selection: Selection) -> None:
+        """Mark a selection in every picture; `NOTHING` takes the marks away."""
+        self._selection = selection
+        if selection.pair != self._shown.pair:
+            self._shown = self._shown.with_pair(selection.pair)
+            self.controls.show(self._shown)
+            self._list_pathways()
+        with self.pane.batch():
+            for picture in self._pictures:
+                picture.mark(selection)
+        self._tell()
+
+    def state(self) -> dict[str, Any]:
+        """Return what the controls say as plain numbers and lists, for JSON."""
+        return self._shown.to_dict()
+
+    def restore(self, state: Mapping[str, Any]) -> None:
+        """Set the controls to what `state` returned.
+
+        Raises
+        ------
+        FzconnectError
+            If it does not fit this scenario; the workbench then stays as it is.
+        """
+        params = Params.from_dict(state)
+        self._draw(params)
+        self._settle(params)
+
+    def close(self) -> None:
+        """Take the workbench off every page and free its widgets; safe to call again."""
+        if self._closed:
+            return
+        self._closed = True
+        self._scheduler.close()
+        self.bar.close()
+        self.controls.close()
+        self.pane.close()
+        close_widget(self.widget)
+
+    def __enter__(self) -> Workbench:
+        return self
+
+    def __exit__(self, *_: object) -> None:
+        self.close()
+
+    def _ipython_display_(self, **_: Any) -> None:
+        show(self.widget, self.pane)
+
+    def __repr__(self) -> str:
+        return f"<Workbench on {self._base.name!r}: {self.study!r}>"
+
+    # ------------------------------------------------------------------ control to picture
+
+    def _follow(self, params: Params) -> None:
+        """Follow the hand: study what the controls ask for and show it."""
+        if params.asks_the_same(self._shown) and params.distance == self._shown.distance:
+            self._shown = params
+            self._choose_pair(params.pair)
+        else:
+            self._draw(params)
+
+    def _draw(self, params: Params) -> None:
+        """Study and show `params`; on an error the last good study stays on the screen."""
+        is_new = not params.asks_the_same(self._shown)
+        fresh = study(params.apply(self._base), like=self.study) if is_new else self.study
+        with self.pane.batch():
+            self.controls.show(params)
+            self.study, self._shown = fresh, params
+            self.section.update(fresh, params.distance)
+            self.faces.update(fresh, params.distance)
+            if is_new:
+                self.graph.update(fresh)
+                self.matrix.update(fresh)
+                self._selection = renewed(fresh, self._selection)
+            for picture in self._pictures:
+                picture.mark(self._selection)
+        self._tell()
+
+    def _settle(self, params: Params) -> None:
+        """When the hand rests: list the pathways of the chosen pair anew."""
+        if params.pair is not None:
+            self._list_pathways()
+
+    def _choose_pair(self, pair: tuple[str, str] | None) -> None:
+        self.choose(of_pair(self.study, *pair) if pair else NOTHING)
+        self._list_pathways()
+
+    def _list_pathways(self) -> None:
+        pair = self._shown.pair
+        self._pathways = []
+        if pair is not None:
+            self._pathways = list(self.study.network.pathways(*pair, limit=_PATHWAYS))
+        labels = ["widest", *(_label(i, way) for i, way in enumerate(self._pathways, start=1))]
+        self.controls.set_pathways(labels if self._pathways else [])
+
+    def _on_pathway(self, change: dict[str, Any]) -> None:
+        rank = change["new"]
+        if self.controls.is_writing or rank is None or rank < 0:
+            return
+        if rank == 0:
+            self._choose_pair(self._shown.pair)
+        else:
+            self.choose(of_pathway(self.study, self._pathways[rank - 1]))
+
+    def _export(self) -> None:
+        from fzconnect.cli import write_study
+
+        folder = self.controls.folder.value.strip()
+        if not folder:
+            msg = "the folder has no name"
+            raise FzconnectError(msg)
+        self._say(f"writing to {folder} ...")
+        write_study(self.scenario, folder)
+        self._say(f"written to {folder}: open report.html there")
+
+    # ------------------------------------------------------------------ words
+
+    def _tell(self) -> None:
+        """Bring the strip, the line on what is marked and the status up to date."""
+        self.strip.value = strip_html(self.study, self._shown.pair)
+        label = self._selection.label or "nothing; choose a window, a link, a sand or a pair"
+        self.marked.value = f'<div class="fz-marked">Marked: {escape(label)}</div>'
+        self._say(" ".join(f"{sentence}." for sentence in self.study.warnings))
+
+    def _say(self, text: str, *, trouble: bool = False) -> None:
+        kind = "fz-status fz-trouble" if trouble else "fz-status"
+        self.status.value = f'<div class="{kind}" role="status">{escape(text)}</div>'
+
+    def _report(self, error: Exception) -> None:
+        """Say an error where the user sees it; one that is our own fault is logged as well."""
+        if isinstance(error, FzconnectError):
+            self._say(f"Not shown: {error}", trouble=True)
+            return
+        _log.error("the workbench failed", exc_info=error)
+        self._say(
+            f"A fault in fzconnect itself: {type(error).__name__}: {error}. The log has the rest.",
+            trouble=True,
+        )
+
+    def _guarded(self, action: Callable[[Any], None]) -> Callable[[Any], None]:
+        """Return a callback that tells its errors: JupyterLab would hide them."""
+
+        def run(argument: Any) -> None:
+            try:
+                action(argument)
+            except Exception as error:
+                self._report(error)
+
+        return run
+
+    # ------------------------------------------------------------------ layout
+
+    def _arranged(self) -> Any:
+        """Return the layout of all figures: one bokeh document."""
+        pair = row(
+            self.section.figure,
+            self.graph.figure,
+            sizing_mode="stretch_width",
+        )
+        return column(
+            self.bar.figure,
+            pair,
+            self.faces.figure,
+            self.matrix.figure,
+            sizing_mode="stretch_width",
+        )
+
+    def _laid_out(self) -> VBox:
+        title = HTML(f'{_STYLE}<div class="fz-title">{escape(self._base.name)}</div>')
+        caution = HTML(f'<div class="fz-caution">{escape(CAUTION)}</div>')
+        self.pane.widget.layout.flex = "1 1 520px"
+        body = HBox(
+            [self.controls.widget, self.pane.widget],
+            layout=Layout(flex_flow="row wrap", width="100%", align_items="flex-start"),
+        )
+        return VBox(
+            [title, self.strip, self.marked, self.status, body, caution],
+            layout=Layout(width="100%"),
+        )
+
+
+def _most(scenario: Scenario) -> int:
+    return max(MOST_STRANDS, scenario.strands.count)
+
+
+def _label(rank: int, pathway: Pathway) -> str:
+    """Return a pathway for a menu: short, since menus are narrow."""
+    return f"{rank}: crosses {pathway.crossings} times, {pathway.bottleneck_area:,.0f} m²"
+
+
+def workbench(scenario: Scenario) -> Workbench:
+    """Return the workbench on a scenario; the last line of a notebook cell shows it."""
+    return Workbench(scenario)

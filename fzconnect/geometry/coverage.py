@@ -69,7 +69,8 @@ def coverage_warning(zone: FaultZone) -> str | None:
         where = f"{worst.side}'s sands"
     else:
         where = f"sands on the {worst.side} face of strand {worst.strand_name}"
-    percent = f"{100.0 * worst.outside:.2g}"
+    part = 100.0 * worst.outside
+    percent = f"{part:.0f}" if part >= 10.0 else f"{part:.2g}"  # .2g would write 100 as 1e+02
     return (
         f"column too short for this throw: {percent} % of the {where} face rock outside the "
         "column, which is unknown, not a seal"

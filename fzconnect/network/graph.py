@@ -13,6 +13,7 @@ import numpy as np
 
 from fzconnect.errors import NetworkError, nearest
 from fzconnect.network.bottleneck import WidestTree
+from fzconnect.network.bridge import parting_bridges
 from fzconnect.network.cut import Cut, minimum_cut, whole_capacities
 from fzconnect.network.pathway import Pathway, pathways
 
@@ -106,8 +107,12 @@ class FaultNetwork:
 
     @cached_property
     def critical_windows(self) -> tuple[tuple[str, str], ...]:
-        """Bridges that are one window: closing that window alone separates sands."""
-        return tuple(edge for edge in self.bridges if self.graph.edges[edge]["windows"] == 1)
+        """Single windows that alone keep a hanging-wall sand and a footwall sand connected.
+
+        Bridges to dead ends are not among them, nor bridges of several windows.
+        """
+        parting = parting_bridges(self.graph, *self.outer_nodes)
+        return tuple(self.ordered(e) for e in parting if self.graph.edges[e]["windows"] == 1)
 
     @cached_property
     def widest_tree(self) -> WidestTree:

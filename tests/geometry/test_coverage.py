@@ -36,6 +36,16 @@ def test_several_strands_are_looked_at_one_by_one() -> None:
     )
 
 
+@pytest.mark.parametrize(
+    ("below", "percent"),
+    [(0, "100"), (0.04, "100"), (1, "90"), (9.0, "10"), (9.5, "5"), (9.98, "0.2")],
+)
+def test_the_part_outside_is_written_as_a_plain_number(below: float, percent: str) -> None:
+    """A sand of 10 m is thrown 10 m to the column's base; `below` metres of shale follow it."""
+    zone = build([30, 10, below or 1e-9], "MSM", 10)
+    assert f": {percent} % of the hanging wall's sands" in str(coverage_warning(zone))
+
+
 def test_coverage_is_exact_along_the_fault() -> None:
     """Throw 0 to 20 m, one sand of 10 m at the base: outside from throw 0 on, all from 10 m on.
 

@@ -122,6 +122,20 @@ def test_a_bridge_of_two_windows_holds_no_critical_window() -> None:
     assert network.critical_windows == ()
 
 
+def test_the_only_window_of_a_dead_end_is_not_critical() -> None:
+    """Throws 30 and 0.5 m: the lens's A (130-150) faces the footwall's C (145-165) by 5 m.
+
+    The lens's C hangs on the hanging wall's C alone, and leads no further.
+    """
+    zone = build([100, 20, 25, 20, 100], "MSMSM", 30.5, [30 / 30.5, 0.5 / 30.5], names="MANCO")
+    network = Answer.from_zone(zone).network
+    assert ("lens 1: C", "hanging wall: C") in network.bridges
+    assert set(network.critical_windows) == {
+        ("footwall: C", "lens 1: A"),
+        ("lens 1: A", "hanging wall: A"),
+    }
+
+
 def test_connection_bottleneck_and_widest_pathway_by_hand(network: FaultNetwork) -> None:
     expected = {(H1, F1): 2.0, (H1, F2): 8.0, (H2, F1): 2.0, (H2, F2): 2.0}
     assert network.bottlenecks == pytest.approx(expected)

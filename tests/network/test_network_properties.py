@@ -72,6 +72,18 @@ def test_without_one_bridge_some_sand_is_cut_off(zone: FaultZone) -> None:
         assert (nx.number_connected_components(rest) > pieces) == is_bridge
 
 
+@given(zones())
+def test_a_critical_window_is_one_that_alone_keeps_a_pair_connected(zone: FaultZone) -> None:
+    network = Answer.from_zone(zone).network
+    expected = set()
+    for u, v, windows in network.graph.edges(data="windows"):
+        rest = network.graph.copy()
+        rest.remove_edge(u, v)
+        if windows == 1 and any(not nx.has_path(rest, *pair) for pair in network.bottlenecks):
+            expected.add(network.ordered((u, v)))
+    assert set(network.critical_windows) == expected
+
+
 @given(zones(strands=1), st.integers(2, 5), st.data())
 def test_one_strand_with_all_the_throw_among_others_with_none_is_the_single_plane(
     zone: FaultZone, count: int, data: st.DataObject

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection
+from collections.abc import Collection, Iterable
 
 import networkx as nx
 
@@ -10,9 +10,12 @@ __all__ = ["parting_bridges"]
 
 
 def parting_bridges(
-    graph: nx.Graph[str], sources: Collection[str], targets: Collection[str]
+    graph: nx.Graph[str],
+    bridges: Iterable[tuple[str, str]],
+    sources: Collection[str],
+    targets: Collection[str],
 ) -> list[tuple[str, str]]:
-    """Return the bridges without which some source no longer reaches some target.
+    """Return those bridges without which some source no longer reaches some target.
 
     Notes
     -----
@@ -30,7 +33,7 @@ def parting_bridges(
     for upper, lower in tree:
         root[lower] = root.get(upper, upper)
     found: list[tuple[str, str]] = []
-    for u, v in nx.bridges(graph):
+    for u, v in bridges:
         lower = v if parent.get(v) == u else u
         here, everywhere = below[lower], below[root[lower]]
         there = everywhere[0] - here[0], everywhere[1] - here[1]

@@ -111,8 +111,8 @@ class FaultNetwork:
 
         Bridges to dead ends are not among them, nor bridges of several windows.
         """
-        parting = parting_bridges(self.graph, *self.outer_nodes)
-        return tuple(self.ordered(e) for e in parting if self.graph.edges[e]["windows"] == 1)
+        parting = parting_bridges(self.graph, self.bridges, *self.outer_nodes)
+        return tuple(edge for edge in parting if self.graph.edges[edge]["windows"] == 1)
 
     @cached_property
     def widest_tree(self) -> WidestTree:

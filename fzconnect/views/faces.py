@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -27,11 +26,12 @@ from fzconnect.views.look import (
     tooltip,
     write,
 )
+from fzconnect.views.outline import closed_bands, visible_corners, window_outlines
 from fzconnect.views.picture import Picture
 from fzconnect.views.selection import Selection, of_edge, of_pair
 
 if TYPE_CHECKING:
-    from fzconnect.geometry import FaultZone, Windows
+    from fzconnect.geometry import FaultZone
     from fzconnect.network import Study
 
 __all__ = ["FacesView", "faces_figure"]
@@ -43,7 +43,8 @@ _GAP = 0.07
 _LEADER = 0.035
 """Length of the line from a band to its name, part of the width of all facets."""
 _AXES = 150  # px that title, key and axis take from the figure's height
-_PASSES = 4
+_UNSEEN = 0.35
+"""Part of a pixel by which an outline may be off."""
 
 
 class FacesView(Picture):
@@ -86,7 +87,8 @@ class FacesView(Picture):
         zone = study.zone
         first, length = float(zone.stations[0]), zone.length
         count = zone.strand_count + 1
-        self._offsets = np.arange(count) * length * (1 + _GAP)
+        self._offsets: Array = np.arange(count, dtype=float) * length * (1 + _GAP)
+        self._offsets[-1] += _GAP * length  # the single plane stands a little apart
         self._end = float(self._offsets[-1]) + length
         tops, bases = zone.body_faces()
         top, base = float(tops.min()), float(bases.max())
@@ -106,13 +108,11 @@ class FacesView(Picture):
             for tick in ticks
         }
         relabel(self.figure.xaxis[0], labels)
-        titles = [f"strand {name}" for name in zone.strand_names]
-        if count > 6:
-            titles = list(zone.strand_names)
+        prefix = "strand " if count <= 6 else ""
         self._sources["titles"].data = {
-            "x": (self._offsets + 0.5 * length).tolist(),
-            "y": [self._top - 11 * self._pixel] * count,
-            "text": [*titles, "single plane"],
+            "x": self._offsets,
+            "y": np.full(count, self._top - 11 * self._pixel),
+            "text": [*(f"{prefix}{name}" for name in zone.strand_names), "single plane"],
         }
         self._sources["frames"].data = {
             "left": self._offsets,
@@ -129,10 +129,11 @@ class FacesView(Picture):
         plane_tops, plane_bases = plane.body_faces()
         tops, bases = np.concatenate([tops, plane_tops]), np.concatenate([bases, plane_bases])
         lines = np.concatenate([tops, bases]).reshape(-1, len(along))
-        kept = _visible(along, lines, 0.35 * self._pixel)
+        whole = np.zeros(len(along), dtype=np.intp)
+        kept = visible_corners(along, lines, whole, _UNSEEN * self._pixel)
         x = self._offsets[:, np.newaxis] + along[kept]
         for side, name in enumerate(("footwall bands", "hanging bands")):
-            self._sources[name].data = _closed(
+            self._sources[name].data = closed_bands(
                 x, tops[:, side][..., kept], bases[:, side][..., kept]
             )
         reach = _LEADER * self._end
@@ -169,9 +170,10 @@ class FacesView(Picture):
         for windows, on_plane in ((study.windows, False), (study.single_plane.windows, True)):
             zone = windows.zone
             blocks, names = zone.block_names, [body.name for body in zone.bodies]
-            outlines = _outlines(windows, self._offsets, last if on_plane else None, self._pixel)
+            facet = np.full(len(windows), last) if on_plane else windows.strand - 1
+            shift = self._offsets[facet] - float(zone.stations[0])
             listed = zip(
-                outlines,
+                *window_outlines(windows, shift, _UNSEEN * self._pixel),
                 windows.strand.tolist(),
                 windows.footwall_body.tolist(),
                 windows.hanging_wall_body.tolist(),
@@ -179,7 +181,7 @@ class FacesView(Picture):
                 windows.area.tolist(),
                 strict=True,
             )
-            for (xs, ys), strand, a, b, unfaulted, area in listed:
+            for xs, ys, strand, a, b, unfaulted, area in listed:
                 kind = "contacts" if unfaulted else "windows"
                 where = "single plane" if on_plane else f"strand {zone.strand_names[strand - 1]}"
                 rows[kind].append(
@@ -213,15 +215,15 @@ class FacesView(Picture):
                 if edge in (on_plane if plane else chosen):
                     xs.append([*data["xs"][row], data["xs"][row][0]])
                     ys.append([*data["ys"][row], data["ys"][row][0]])
-        self._sources["marks"].data = {"xs": xs, "ys": ys}
+        self._replace(self._sources["marks"], {"xs": xs, "ys": ys})
 
     def _build(self) -> None:
         source = self._sources
         plot = self.figure = base_figure(
             self._height,
             title="Strand faces: what touches what on every strand",
-            x_range=Range1d(0, 1),
-            y_range=Range1d(1, 0),
+            x_range=Range1d(start=0, end=1),
+            y_range=Range1d(start=1, end=0),
             x_axis_label="Distance along the fault, m",
             y_axis_label="Depth, m",
             outline_line_color=None,
@@ -264,7 +266,11 @@ class FacesView(Picture):
             "xs", "ys", source=source["marks"], line_color=palette.ACCENT_DEEP, line_width=3
         )
         ends = ("x0", "y0", "x1", "y1")
-        here: dict[str, Any] = {"line_color": palette.INK, "line_width": 2, "line_dash": "dotdash"}
+        here: dict[str, Any] = {
+            "line_color": palette.INK,
+            "line_width": 1.4,
+            "line_dash": "dotdash",
+        }
         plot.segment(*ends, source=source["section"], **here)
         for name, align in (("names left", "right"), ("names right", "left")):
             plot.segment(
@@ -274,7 +280,6 @@ class FacesView(Picture):
         write(
             plot,
             source["titles"],
-            text_align="center",
             text_font_size=LABEL_SIZE,
             text_font_style="bold",
         )
@@ -313,65 +318,6 @@ _EMPTY: dict[str, tuple[str, ...]] = {
     "names right": _NAMES,
     "titles": ("x", "y", "text"),
 }
-
-
-def _closed(x: Array, top: Array, base: Array) -> dict[str, Array]:
-    """Return the outlines of bands as one chain of corners with NaN between them.
-
-    Parameters
-    ----------
-    x : (facets, S) array
-    top, base : (facets, bodies, S) arrays
-    """
-    facets, bodies, _ = top.shape
-    across = np.broadcast_to(x[:, np.newaxis, :], top.shape)
-    gap = np.full((facets, bodies, 1), np.nan)
-    xs = np.concatenate([across, across[..., ::-1], gap], axis=-1)
-    ys = np.concatenate([top, base[..., ::-1], gap], axis=-1)
-    return {"x": xs.ravel().astype(np.float32), "y": ys.ravel().astype(np.float32)}
-
-
-def _outlines(
-    windows: Windows, offsets: Array, facet: int | None, pixel: float
-) -> Iterable[tuple[list[float], list[float]]]:
-    """Yield the corners of every window, moved to its facet, without corners nobody can see."""
-    start = float(windows.zone.stations[0])
-    for window, strand in enumerate(windows.strand.tolist()):
-        shift = float(offsets[strand - 1 if facet is None else facet]) - start
-        distance, upper, lower = windows.corners(window)
-        if len(distance) > 4:
-            kept = _visible(distance, np.stack([upper, lower]), 0.35 * pixel)
-            distance, upper, lower = distance[kept], upper[kept], lower[kept]
-        along = (distance + shift).round(2).tolist()
-        yield along + along[::-1], upper.round(2).tolist() + lower[::-1].round(2).tolist()
-
-
-def _visible(x: Array, lines: Array, tolerance: float) -> NDArray[np.intp]:
-    """Return the corners that lines need to look the same within a tolerance, m.
-
-    Parameters
-    ----------
-    x : (S,) array, increasing
-    lines : (n, S) array
-    tolerance : float
-
-    Notes
-    -----
-    Every second corner is dropped where no line bends there by more, a few times over.
-    """
-    kept = np.arange(len(x))
-    for _ in range(_PASSES):
-        if len(kept) < 3:
-            break
-        at, line = x[kept], lines[:, kept]
-        part = (at[1:-1] - at[:-2]) / (at[2:] - at[:-2])
-        straight = line[:, :-2] + part * (line[:, 2:] - line[:, :-2])
-        drop = np.flatnonzero(np.abs(straight - line[:, 1:-1]).max(axis=0) < tolerance) + 1
-        drop = drop[drop % 2 == 1]
-        if not len(drop):
-            break
-        kept = np.delete(kept, drop)
-    return kept
 
 
 def faces_figure(study: Study, distance: float, *, height: int = 460) -> FacesView:

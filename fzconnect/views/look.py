@@ -6,7 +6,9 @@ from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
-from bokeh.models import ColumnDataSource, FixedTicker, GlyphRenderer, Legend, LegendItem, Range1d
+from bokeh.models import ColumnDataSource, FixedTicker
+from bokeh.models.annotations.legends import Legend, LegendItem
+from bokeh.models.renderers.glyph_renderer import GlyphRenderer
 from bokeh.plotting import figure
 from numpy.typing import NDArray
 
@@ -57,7 +59,7 @@ def base_figure(height: int, **options: Any) -> figure:
         "height": height,
         "sizing_mode": "stretch_width",
         "min_width": 300,
-        "tools": "pan,wheel_zoom,box_zoom,reset,save,tap",
+        "tools": "pan,wheel_zoom,box_zoom,reset,save",
         "active_drag": None,
         "active_scroll": None,
         "toolbar_location": "right",
@@ -92,7 +94,9 @@ def style_axis(axis: Any) -> None:
     )
 
 
-def add_key(plot: figure, items: Sequence[tuple[str, GlyphRenderer]], *, columns: int) -> Legend:
+def add_key(
+    plot: figure, items: Sequence[tuple[str, GlyphRenderer[Any]]], *, columns: int
+) -> Legend:
     """Add a key below a figure, in words; each entry shows the glyph of its renderer."""
     key = Legend(
         items=[LegendItem(label=words, renderers=[glyph]) for words, glyph in items],
@@ -107,9 +111,9 @@ def add_key(plot: figure, items: Sequence[tuple[str, GlyphRenderer]], *, columns
         glyph_width=26,
         glyph_height=18,
         spacing=14,
-        padding=4,
         margin=4,
     )
+    key.update(padding=4)
     plot.add_layout(key, "below")
     return key
 
@@ -131,7 +135,7 @@ def relabel(axis: Any, labels: dict[float, str]) -> None:
         axis.major_label_overrides = labels
 
 
-def set_range(shown: Range1d, start: float, end: float) -> None:
+def set_range(shown: Any, start: float, end: float) -> None:
     """Set both ends of a range, and where `reset` goes; silent if nothing changes."""
     if (shown.start, shown.end) != (start, end):
         shown.update(start=start, end=end, reset_start=start, reset_end=end)
@@ -171,8 +175,8 @@ def spread(wanted: Sequence[float] | Array, gap: float) -> Array:
             mean = (mean * size + before * count) / (size + count)
             size += count
         pools.append((mean, size))
-    places = [mean for mean, size in pools for _ in range(size)]
-    return np.array(places) + gap * np.arange(len(places))
+    places = np.array([mean for mean, size in pools for _ in range(size)])
+    return np.asarray(places + gap * np.arange(len(places)), dtype=float)
 
 
 def thinned(
@@ -215,7 +219,7 @@ def area_text(value: float) -> str:
     return f"{number_text(value)} m²"
 
 
-def write(plot: figure, source: ColumnDataSource, **style: Any) -> GlyphRenderer:
+def write(plot: figure, source: ColumnDataSource, **style: Any) -> GlyphRenderer[Any]:
     """Add text to a figure from the columns x, y and text of a source."""
     settings: dict[str, Any] = {
         "text_font": {"value": FONT},

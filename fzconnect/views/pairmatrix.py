@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
-from bokeh.models import ColumnDataSource, Range1d
+from bokeh.models import ColumnDataSource, LinearColorMapper, Range1d
 
 from fzconnect.views import palette
 from fzconnect.views.look import (
+    LINE,
     SMALL_SIZE,
     add_key,
     area_text,
@@ -35,19 +36,10 @@ OUTCOMES: dict[tuple[bool, bool], str] = {
 }
 """What a cell says, by (connected across the zone, connected across the single plane)."""
 
-_CELL: dict[tuple[bool, bool], tuple[str, str]] = {
-    (True, True): (palette.ACCENT_PALE, palette.ACCENT_DEEP),
-    (True, False): (palette.ACCENT, palette.PAPER),
-    (False, True): (palette.PAPER, palette.INK),
-    (False, False): ("#F3F5F7", "#A9B0B9"),
-}
-"""Fill and ink of a cell."""
-_MARKERS: dict[tuple[bool, bool], str] = {
-    (True, True): "circle",
-    (True, False): "cross",
-    (False, True): "x",
-    (False, False): "dot",
-}
+_KINDS = tuple(OUTCOMES)
+_FILLS = (palette.ACCENT_PALE, palette.ACCENT, palette.PAPER, "#F3F5F7")
+_INKS = (palette.ACCENT_DEEP, palette.PAPER, palette.INK, "#A9B0B9")
+_MARKERS = ("circle", "cross", "x", "dot")
 _AXES = 150  # px that title, key and axis take from the figure's height
 
 
@@ -74,32 +66,33 @@ class PairMatrixView(Picture):
         count = len(sands)
         set_range(self.figure.x_range, -0.5, count - 0.5)
         set_range(self.figure.y_range, count - 0.5, -0.5)
-        labels = {float(i): sand for i, sand in enumerate(sands)}
+        cell = (self._height - _AXES) / count  # px, about: cells are as tall, and mostly wider
+        every = int(np.ceil(0.9 * LINE / cell))
+        labels = {float(i): sands[i] for i in range(0, count, every)}
         relabel(self.figure.xaxis[0], labels)
         relabel(self.figure.yaxis[0], labels)
-        cell = (self._height - _AXES) / count  # px, about: cells are wider than tall or square
         size = float(np.clip(0.55 * cell, 5, 16))
         across, down = np.meshgrid(np.arange(count, dtype=float), np.arange(count, dtype=float))
         kinds = [(pair.connected, pair.connected_single_plane) for pair in study.pairs]
+        numbers = [_KINDS.index(kind) for kind in kinds]
+        codes = np.array(numbers, dtype=float)
         self._replace(
             self._sources["cells"],
             {
                 "x": across.ravel(),
                 "y": down.ravel(),
-                "fill": [_CELL[kind][0] for kind in kinds],
-                "ink": [_CELL[kind][1] for kind in kinds],
-                "marker": [_MARKERS[kind] for kind in kinds],
-                "size": np.where([kind == (False, False) for kind in kinds], 0.6 * size, size),
+                "kind": codes,
+                "marker": [_MARKERS[number] for number in numbers],
+                "size": np.where(codes == len(_KINDS) - 1, 0.6 * size, size),
                 "hanging": [pair.hanging_wall_sand for pair in study.pairs],
                 "foot": [pair.footwall_sand for pair in study.pairs],
-                "outcome": [OUTCOMES[kind] for kind in kinds],
-                "area": [_bottleneck(pair.bottleneck_area) for pair in study.pairs],
-                "plane": [_bottleneck(pair.bottleneck_area_single_plane) for pair in study.pairs],
+                "words": [_words(pair) for pair in study.pairs],
             },
         )
         zone, plane = (sum(kind[i] for kind in kinds) for i in (0, 1))
         title = f"Sand pairs: {zone} of {len(kinds)} connect, {plane} across a single plane"
         set_title(self.figure, title)
+        item: Any
         for item, (kind, words) in zip(self._key.items, OUTCOMES.items(), strict=True):
             label = {"value": f"{words} ({kinds.count(kind)})"}
             if item.label != label:
@@ -116,18 +109,18 @@ class PairMatrixView(Picture):
     def _draw_mark(self, selection: Selection) -> None:
         sands = self._study.network.sands if self._study else ()
         if selection.pair and set(selection.pair) <= set(sands):
-            hanging, foot = (sands.index(sand) for sand in selection.pair)
-            self._sources["mark"].data = {"x": [float(foot)], "y": [float(hanging)]}
+            hanging, foot = (float(sands.index(sand)) for sand in selection.pair)
+            self._replace(self._sources["mark"], {"x": [foot], "y": [hanging]})
         else:
-            self._sources["mark"].data = {"x": [], "y": []}
+            self._replace(self._sources["mark"], {"x": [], "y": []})
 
     def _build(self) -> None:
         source = self._sources
         plot = self.figure = base_figure(
             self._height,
             title=" ",
-            x_range=Range1d(0, 1),
-            y_range=Range1d(1, 0),
+            x_range=Range1d(start=0, end=1),
+            y_range=Range1d(start=1, end=0),
             x_axis_label="Sand in the footwall",
             y_axis_label="Sand in the hanging wall",
             x_axis_location="above",
@@ -141,7 +134,7 @@ class PairMatrixView(Picture):
             1,
             1,
             source=source["cells"],
-            fill_color="fill",
+            fill_color=_by_kind(_FILLS),
             line_color=palette.RULE,
             line_width=1,
         )
@@ -151,8 +144,8 @@ class PairMatrixView(Picture):
             source=source["cells"],
             marker="marker",
             size="size",
-            line_color="ink",
-            fill_color="ink",
+            line_color=_by_kind(_INKS),
+            fill_color=_by_kind(_INKS),
             line_width=2.4,
         )
         for colour, width in ((palette.PAPER, 7), (palette.ACCENT_DEEP, 3.5)):
@@ -167,13 +160,13 @@ class PairMatrixView(Picture):
                 line_width=width,
             )
         items = []
-        for kind, words in OUTCOMES.items():
-            ink = palette.ACCENT if kind == (True, False) else _CELL[kind][1]
+        for number, words in enumerate(OUTCOMES.values()):
+            ink = palette.ACCENT if _INKS[number] == palette.PAPER else _INKS[number]
             glyph = plot.scatter(
                 "x",
                 "y",
                 source=one_row(x=np.nan, y=np.nan),
-                marker=_MARKERS[kind],
+                marker=_MARKERS[number],
                 size=13,
                 line_color=ink,
                 fill_color=ink,
@@ -183,21 +176,22 @@ class PairMatrixView(Picture):
         self._key = add_key(plot, items, columns=2)
         card = tooltip(
             ("@hanging", "in the hanging wall, <b>@foot</b> in the footwall"),
-            ("", "@outcome"),
-            ("bottleneck:", "@area"),
-            ("on a single plane:", "@plane"),
+            ("", "@words"),
         )
         self._make_hoverable((cells, card))
         self._make_tappable({"cells": cells})
 
 
 _EMPTY: dict[str, tuple[str, ...]] = {
-    "cells": (
-        *("x", "y", "fill", "ink", "marker", "size"),
-        *("hanging", "foot", "outcome", "area", "plane"),
-    ),
+    "cells": ("x", "y", "kind", "marker", "size", "hanging", "foot", "words"),
     "mark": ("x", "y"),
 }
+
+
+def _by_kind(colours: tuple[str, ...]) -> Any:
+    """Return a colour by the number of the outcome."""
+    mapper = LinearColorMapper(palette=list(colours), low=-0.5, high=len(colours) - 0.5)
+    return {"field": "kind", "transform": mapper}
 
 
 def outcome(pair: Pair) -> str:
@@ -205,8 +199,13 @@ def outcome(pair: Pair) -> str:
     return OUTCOMES[pair.connected, pair.connected_single_plane]
 
 
-def _bottleneck(area: float) -> str:
-    return area_text(area) if area else "none"
+def _words(pair: Pair) -> str:
+    """Return what the hover card says of a pair; short where nothing connects."""
+    if not (pair.connected or pair.connected_single_plane):
+        return outcome(pair)
+    areas = [pair.bottleneck_area, pair.bottleneck_area_single_plane]
+    zone, plane = (area_text(area) if area else "none" for area in areas)
+    return f"{outcome(pair)}; bottleneck {zone}, on a single plane {plane}"
 
 
 def pair_matrix_figure(study: Study, *, height: int = 480) -> PairMatrixView:

@@ -141,7 +141,8 @@ class PathwayGraphView(Picture):
         longest = max(len(body.name) for body in zone.bodies)
         beside = (0.28 + 0.022 * min(longest, 14)) * max(1.0, last / 2.5)
         set_range(self.figure.x_range, -beside - _HALF, last + beside + _HALF)
-        relabel(self.figure.xaxis[0], {float(j): name for j, name in enumerate(blocks)})
+        titles = [name.replace(" ", "\n") if last > 5 else name for name in blocks]
+        relabel(self.figure.xaxis[0], {float(j): name for j, name in enumerate(titles)})
         prefix = "strand " if last < 5 else ""
         self._sources["strands"].data = {
             "x": [j + 0.5 for j in range(last)],
@@ -168,29 +169,30 @@ class PathwayGraphView(Picture):
                     _NAME, (*row, edge, middle[i], edge + sign * step), strict=True
                 ):
                     columns[name].append(value)
-        self._sources["names"].data = columns
+        self._sources["names"].data = {**columns}
 
     def _draw_mark(self, selection: Selection) -> None:
         places = [self._rows[edge] for edge in selection.edges if edge in self._rows]
-        columns = list(zip(*places, strict=True)) or [()] * 5
-        marks = dict(zip(_EDGE[:5], map(list, columns), strict=True))
+        parts = list(zip(*places, strict=True)) or [()] * 5
+        marks: dict[str, Any] = dict(zip(_EDGE[:5], map(list, parts), strict=True))
         marks["casing"] = [width + 7 for width in marks["width"]]
         marks["width"] = [width + 3 for width in marks["width"]]
-        self._sources["marked edges"].data = marks
+        self._replace(self._sources["marked edges"], marks)
         nodes = [node for node in selection.nodes if node in self._where]
-        self._sources["marked nodes"].data = {
+        columns = {
             "x": [self._where[node][0] for node in nodes],
             "y": [self._where[node][1] for node in nodes],
             "height": [self._shown_thickness[node] + 6 * self._pixel for node in nodes],
         }
+        self._replace(self._sources["marked nodes"], columns)
 
     def _build(self) -> None:
         source = self._sources
         plot = self.figure = base_figure(
             self._height,
             title="Pathway graph: sands of every block and the windows between them",
-            x_range=Range1d(0, 1),
-            y_range=Range1d(1, 0),
+            x_range=Range1d(start=0, end=1),
+            y_range=Range1d(start=1, end=0),
             y_axis_label="Middle depth of the sand, m",
             x_axis_location="above",
             outline_line_color=None,

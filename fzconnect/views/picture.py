@@ -6,7 +6,8 @@ from abc import ABC, abstractmethod
 from collections.abc import Callable, Mapping
 from typing import Any
 
-from bokeh.models import ColumnDataSource, GlyphRenderer, HoverTool, TapTool
+from bokeh.models import ColumnDataSource, HoverTool, TapTool
+from bokeh.models.renderers.glyph_renderer import GlyphRenderer
 from bokeh.plotting import figure
 
 from fzconnect.views.selection import NOTHING, Selection
@@ -75,16 +76,15 @@ class Picture(ABC):
                 source.selected.on_change("indices", self._on_indices)
         self._callbacks.append(callback)
 
-    def _make_tappable(self, renderers: Mapping[str, GlyphRenderer]) -> None:
+    def _make_tappable(self, renderers: Mapping[str, Any]) -> None:
         """Let taps choose glyphs of these renderers; a chosen glyph does not change its look."""
         for name, renderer in renderers.items():
             renderer.selection_glyph = None
             renderer.nonselection_glyph = None
             self.tappable[name] = renderer.data_source
-        tap = self.figure.select_one(TapTool)
-        tap.renderers = list(renderers.values())
+        self.figure.add_tools(TapTool(renderers=list(renderers.values())))
 
-    def _make_hoverable(self, *cards: tuple[GlyphRenderer, str]) -> None:
+    def _make_hoverable(self, *cards: tuple[GlyphRenderer[Any], str]) -> None:
         """Give renderers a hover card each."""
         for renderer, card in cards:
             tool = HoverTool(renderers=[renderer], tooltips=card, visible=False)
@@ -96,7 +96,9 @@ class Picture(ABC):
             self._quiet = True
             source.selected.indices = []
             self._quiet = False
-        source.data = data
+        old: Any = source.data
+        if any(len(column) for column in (*data.values(), *old.values())):
+            source.data = data
 
     def _clear_taps(self) -> None:
         self._quiet = True

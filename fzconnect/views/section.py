@@ -20,6 +20,7 @@ from fzconnect.views.look import (
     one_row,
     relabel,
     set_title,
+    spread,
     style_axis,
     thinned,
     tooltip,
@@ -121,9 +122,9 @@ class SectionView(Picture):
         self._pixel = pixel
         half = 0.5 * (float(zone.lens_width.sum()) + slope * span)
         names = max(len(name) for name in zone.strand_names)
-        self._upright = _crowded(zone, names, pixel / stretch)
-        above = (16 + 9 * names if self._upright else 30) * pixel
-        below = (62 if zone.strand_count > 1 else 8) * pixel
+        self._upright = zone.strand_count > 1 and names > 3
+        above = (26 + 9 * names if self._upright else 38) * pixel
+        below = (70 if zone.strand_count > 1 else 8) * pixel
         self._sources["frame"].data = {
             "left": [-half - beside],
             "right": [half + beside],
@@ -139,17 +140,15 @@ class SectionView(Picture):
         corners_x = np.stack([left[:, :-1], right[:, :-1], right[:, 1:], left[:, 1:]], axis=-1)
         corners_y = np.stack([depth[:, :-1], depth[:, :-1], depth[:, 1:], depth[:, 1:]], axis=-1)
         vsh = np.array([zone.across(zone.vsh, block) for block in range(len(depth))])
-        sand = np.array(zone.is_sand)
-        for name, chosen in (("sands", sand), ("shales", ~sand)):
+        sand, blocks = np.array(zone.is_sand), zone.block_names
+        for source, chosen in (("sands", sand), ("shales", ~sand)):
             layers = [zone.layer_names[i] for i in np.flatnonzero(chosen)]
-            blocks = [block for block in zone.block_names for _ in layers]
             self._replace(
-                self._sources[name],
+                self._sources[source],
                 {
                     "xs": np.round(corners_x[:, chosen].reshape(-1, 4), 2).tolist(),
                     "ys": np.round(corners_y[:, chosen].reshape(-1, 4), 2).tolist(),
-                    "name": layers * len(depth),
-                    "block": blocks,
+                    "name": [f"{name} in the {block}" for block in blocks for name in layers],
                     "vsh": vsh[:, chosen].ravel(),
                     "top": depth[:, :-1][:, chosen].ravel(),
                     "base": depth[:, 1:][:, chosen].ravel(),
@@ -174,40 +173,55 @@ class SectionView(Picture):
         tip = np.abs(shares) < _TOO_SMALL
         reach = 6 * self._pixel
         lean = section.slope * reach
-        lines: dict[str, Any] = {
-            "x0": x_top - lean,
-            "y0": np.full(count, top - reach),
-            "x1": x_base + lean,
-            "y1": np.full(count, base + reach),
+        lines: dict[str, list[Any]] = {
+            "x0": (x_top - lean).tolist(),
+            "y0": [top - reach] * count,
+            "x1": (x_base + lean).tolist(),
+            "y1": [base + reach] * count,
             "name": list(zone.strand_names),
-            "throw": _at(zone, zone.strand_throw, section.distance),
-            "share": 100.0 * shares,
+            "throw": _at(zone, zone.strand_throw, section.distance).tolist(),
+            "share": (100.0 * shares).tolist(),
         }
         for name, chosen in (("strands", ~tip), ("tips", tip)):
-            self._sources[name].data = {
-                key: [v for v, keep in zip(value, chosen, strict=True) if keep]
-                if isinstance(value, list)
-                else value[chosen]
-                for key, value in lines.items()
-            }
+            rows = np.flatnonzero(chosen).tolist()
+            self._replace(
+                self._sources[name],
+                {key: [column[row] for row in rows] for key, column in lines.items()},
+            )
+        # names stand apart where strands do not; a thin line leads from each to its own
+        pixel_x = self._pixel / self.stretch
+        start = x_top - lean
+        apart = 15 if self._upright else 8 * max(map(len, zone.strand_names)) + 6
         self._sources["strand names"].data = {
-            "x": x_top - 1.6 * lean,
-            "y": np.full(count, top - 1.6 * reach),
+            "x": spread(start, apart * pixel_x).tolist(),
+            "y": [top - 3.2 * reach] * count,
             "text": list(zone.strand_names),
             "angle": [np.pi / 2 if self._upright else 0.0] * count,
             "align": ["left" if self._upright else "center"] * count,
             "baseline": ["middle" if self._upright else "bottom"] * count,
+            "x0": start.tolist(),
+            "y0": [top - reach] * count,
+            "y1": [top - 2.9 * reach] * count,
         }
-        middle = 0.5 * (x_base[:-1] + x_base[1:]) + lean
-        gap = 12 * self._pixel / self.stretch
-        left, right = float(x_base[0] + lean - gap), float(x_base[-1] + lean + gap)
+        end = x_base + lean
+        middle = 0.5 * (end[:-1] + end[1:])
+        names = spread(middle, 15 * pixel_x)
+        outer = [float(end[0]) - 12 * pixel_x, float(end[-1]) + 12 * pixel_x]
+        if count > 1:
+            outer = [
+                min(outer[0], float(names[0]) - 14 * pixel_x),
+                max(outer[1], float(names[-1]) + 14 * pixel_x),
+            ]
         self._sources["block names"].data = {
-            "x": [left, *middle.tolist(), right],
-            "y": [base + 1.6 * reach] * (count + 1),
+            "x": [outer[0], *names.tolist(), outer[1]],
+            "y": [base + 3.2 * reach] * (count + 1),
             "text": list(zone.block_names),
             "angle": [0.0, *[np.pi / 2] * (count - 1), 0.0],
             "align": ["right", *["right"] * (count - 1), "left"],
             "baseline": ["top", *["middle"] * (count - 1), "top"],
+            "x0": [outer[0], *middle.tolist(), outer[1]],
+            "y0": [base + 2.9 * reach, *[base + reach] * (count - 1), base + 2.9 * reach],
+            "y1": [base + 2.9 * reach] * (count + 1),
         }
 
     def _windows(self, study: Study, section: Section) -> None:
@@ -262,7 +276,7 @@ class SectionView(Picture):
             rows = [row for row, edge in enumerate(self._picks[kind]) if edge in chosen]
             for name, column in marks.items():
                 column.extend(data[name][row] for row in rows)
-        self._sources["marks"].data = {**marks}
+        self._replace(self._sources["marks"], marks)
         edges = section.extent(self._room)
         xs, ys = [], []
         for node in selection.nodes:
@@ -275,7 +289,7 @@ class SectionView(Picture):
             x_base, y_base = section.outline(block, body.last, edges)
             xs.append([*x_top[:2].tolist(), *x_base[2:].tolist(), float(x_top[0])])
             ys.append([*y_top[:2].tolist(), *y_base[2:].tolist(), float(y_top[0])])
-        self._sources["marked sands"].data = {"xs": xs, "ys": ys}
+        self._replace(self._sources["marked sands"], {"xs": xs, "ys": ys})
 
     # ------------------------------------------------------------------ built once
 
@@ -374,6 +388,9 @@ class SectionView(Picture):
             ("strand names", palette.INK, "bold"),
             ("block names", palette.QUIET, "normal"),
         ):
+            plot.segment(
+                "x0", "y0", "x", "y1", source=source[name], line_color=palette.QUIET, line_width=0.8
+            )
             write(
                 plot,
                 source[name],
@@ -397,7 +414,7 @@ class SectionView(Picture):
             columns=3,
         )
         card = tooltip(
-            ("@name", "in the @block"),
+            ("@name", ""),
             ("vsh", "@vsh{0.00}"),
             ("thickness", "@thickness{0.0} m"),
             ("depth", "@top{0} to @base{0} m"),
@@ -425,8 +442,8 @@ class SectionView(Picture):
 
 
 _SEGMENT = ("x0", "y0", "x1", "y1")
-_LAYER = ("xs", "ys", "name", "block", "vsh", "top", "base", "thickness")
-_TEXT = ("x", "y", "text", "angle", "align", "baseline")
+_LAYER = ("xs", "ys", "name", "vsh", "top", "base", "thickness")
+_TEXT = ("x", "y", "text", "angle", "align", "baseline", "x0", "y0", "y1")
 _EMPTY: dict[str, tuple[str, ...]] = {
     "frame": ("left", "right", "top", "bottom"),
     "sands": _LAYER,
@@ -462,13 +479,6 @@ def _sides(section: Section, edges: tuple[float, float]) -> tuple[Array, Array]:
 def _at(zone: FaultZone, values: Array, distance: float) -> Array:
     """Return (N, S) values of the strands at a distance: (N,) array."""
     return np.array([np.interp(distance, zone.stations, row) for row in values])
-
-
-def _crowded(zone: FaultZone, letters: int, metres_per_pixel: float) -> bool:
-    """Tell whether strand names written across would run into each other."""
-    if zone.strand_count == 1:
-        return False
-    return bool(zone.lens_width.min() / metres_per_pixel < 8 * letters + 2)
 
 
 def section_figure(study: Study, distance: float, *, height: int = 540) -> SectionView:

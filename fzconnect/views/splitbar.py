@@ -16,11 +16,11 @@ from bokeh.models import ColumnDataSource, HoverTool, Range1d
 from bokeh.models.annotations import Span
 from bokeh.plotting import figure
 
+from fzconnect.views.palette import ACCENT, INK
+
 __all__ = ["Joint", "SplitBarView", "split_bar"]
 
-ACCENT = "#6D28A8"
-INK = "#2B2733"
-QUIET = ("#E3E0EA", "#CFCAD9")  # neighbours differ; the joint between them carries the meaning
+TINTS = ("#E3E0EA", "#CFCAD9")  # neighbours differ; the joint between them carries the meaning
 LANE, SECOND_LANE = (0.0, 1.0), (-0.95, -0.25)
 MIDDLE, ABOVE = 0.5, 1.4
 ROWS_BELOW = (-0.38, -0.82)  # labels of pieces too narrow for them; neighbours take turns
@@ -97,7 +97,7 @@ class SplitBarView:
             if share < 0:
                 left, right = back + share, back
                 back = left
-                _add(pieces, left, right, *SECOND_LANE, QUIET[0], "right_diagonal_line")
+                _add(pieces, left, right, *SECOND_LANE, TINTS[0], "right_diagonal_line")
                 _add(
                     labels,
                     (left + right) / 2,
@@ -111,7 +111,7 @@ class SplitBarView:
             if not tip:
                 ends[index] = (left, right)
             if share > 0:
-                _add(pieces, left, right, *LANE, QUIET[index % 2], " ")
+                _add(pieces, left, right, *LANE, TINTS[index % 2], " ")
             text = f"{name}  tip" if tip else f"{name}  {_percent(share)}"
             room = (right - left) / span * self._width - HANDLE
             if len(text) * CHARACTER <= room:

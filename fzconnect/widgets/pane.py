@@ -25,7 +25,11 @@ from contextlib import contextmanager
 from hashlib import sha256
 from typing import Any
 
-from bokeh.document.events import DocumentPatchedEvent
+from bokeh.document.events import (
+    ColumnDataChangedEvent,
+    ColumnsStreamedEvent,
+    DocumentPatchedEvent,
+)
 from bokeh.embed.bundle import bundle_for_objs_and_resources
 from bokeh.models import LayoutDOM
 from bokeh.protocol import Protocol
@@ -54,8 +58,13 @@ class _Bridge(BokehModel):
     def _document_patched(self, event: DocumentPatchedEvent) -> None:
         if self._held is None or event.setter is self:
             super()._document_patched(event)
-        # An older change of the same property takes the newer value instead of both being sent.
-        elif not any(old.combine(event) for old in reversed(self._held)):
+            return
+        if isinstance(event, ColumnsStreamedEvent):
+            # Columns are read when they are sent: rows added after a change that is still held
+            # would go twice, once with the columns and once by themselves.
+            event = ColumnDataChangedEvent(event.document, event.model, "data")
+        # An older change of the same thing takes the newer value instead of both being sent.
+        if not any(_combine(old, event) for old in reversed(self._held)):
             self._held.append(event)
 
     def close(self) -> None:
@@ -73,16 +82,24 @@ class _Bridge(BokehModel):
         finally:
             # Also after an error: what has changed by then must reach the browser.
             events, self._held = self._held, None
-            if events and self.comm is not None:
-                self._send_patch(events)
+            self._send_patch(events)
 
     def _send_patch(self, events: list[DocumentPatchedEvent]) -> None:
+        if not events or self.comm is None:
+            return
         message = Protocol().create("PATCH-DOC", events)
         for part in (message.header_json, message.metadata_json, message.content_json):
             self.send({"msg": "patch", "payload": part})
         for buffer in message.buffers:
             self.send({"msg": "patch", "payload": json.dumps(buffer.ref)})
             self.send({"msg": "patch"}, [buffer.to_bytes()])
+
+
+def _combine(old: DocumentPatchedEvent, new: DocumentPatchedEvent) -> bool:
+    """Return whether sending the old change, late, sends the new one as well."""
+    if isinstance(old, ColumnDataChangedEvent) and isinstance(new, ColumnDataChangedEvent):
+        return old.model is new.model and old.cols is None
+    return old.combine(new)
 
 
 class FigurePane:

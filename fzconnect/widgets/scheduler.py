@@ -116,6 +116,7 @@ class Scheduler(Generic[T]):
         self._newest: list[T] = []  # empty, or the one request that counts
         self._light_due = self._heavy_due = _NEVER
         self._light_free = -_NEVER  # when light work may start again
+        self._at_once = False  # whether the newest request lets nothing wait
         self._working = False
         self._closed = False
         self._alarm: Callable[[], None] | None = None
@@ -140,7 +141,7 @@ class Scheduler(Generic[T]):
             if self._closed:
                 return
             now = self._clock()
-            at_once = final or self._timer is None
+            self._at_once = at_once = final or self._timer is None
             self._newest = [request]
             self._light_due = now if at_once else max(now, self._light_free)
             if self._heavy is not None:
@@ -204,8 +205,11 @@ class Scheduler(Generic[T]):
             with self._lock:
                 # A quarter pause after the end, too: requests that piled up meanwhile must be
                 # read first, or each of them would be worked off although it is out of date.
+                # The hand rests only if none of them is there, so heavy work waits for that too.
                 end = self._clock()
                 self._light_free = max(start + self._light_every, end + self._light_every / 4)
+                if not self._at_once:
+                    self._heavy_due = max(self._heavy_due, self._light_free)
 
     def _report(self, error: Exception) -> None:
         try:

@@ -9,6 +9,7 @@ if TYPE_CHECKING:
     from fzconnect.views.faces import faces_figure
     from fzconnect.views.pairmatrix import pair_matrix_figure
     from fzconnect.views.pathgraph import pathway_graph_figure
+    from fzconnect.views.report import report_html
     from fzconnect.views.section import section_figure
     from fzconnect.views.selection import NOTHING, Selection
     from fzconnect.views.splitbar import split_bar
@@ -19,6 +20,7 @@ _HOMES = {
     "faces_figure": "fzconnect.views.faces",
     "pair_matrix_figure": "fzconnect.views.pairmatrix",
     "pathway_graph_figure": "fzconnect.views.pathgraph",
+    "report_html": "fzconnect.views.report",
     "section_figure": "fzconnect.views.section",
     "split_bar": "fzconnect.views.splitbar",
 }
@@ -29,6 +31,7 @@ __all__ = [
     "faces_figure",
     "pair_matrix_figure",
     "pathway_graph_figure",
+    "report_html",
     "section_figure",
     "split_bar",
 ]

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from bokeh.models import ColumnDataSource, Range1d
+from bokeh.models.glyphs import MultiLine, Patch, Patches, Quad, Segment
 from numpy.typing import NDArray
 
 from fzconnect.views import palette
@@ -16,6 +17,7 @@ from fzconnect.views.look import (
     add_key,
     area_text,
     base_figure,
+    draw,
     nice_step,
     number_text,
     one_row,
@@ -228,8 +230,13 @@ class FacesView(Picture):
             y_axis_label="Depth, m",
             outline_line_color=None,
         )
-        plot.quad(
-            *("left", "right", "top", "bottom"),
+        draw(
+            plot,
+            Quad,
+            "left",
+            "right",
+            "top",
+            "bottom",
             source=source["frames"],
             fill_color="#F3F5F7",
             line_color=palette.RULE,
@@ -239,7 +246,7 @@ class FacesView(Picture):
             "line_color": palette.SAND_EDGE,
             "line_width": 1.4,
         }
-        plot.patch("x", "y", source=source["footwall bands"], **sand)
+        draw(plot, Patch, "x", "y", source=source["footwall bands"], **sand)
         violet: dict[str, Any] = {
             "fill_color": palette.ACCENT,
             "fill_alpha": 0.85,
@@ -257,13 +264,27 @@ class FacesView(Picture):
             "hatch_scale": 7,
             "hatch_weight": 1,
         }
-        contacts = plot.patches("xs", "ys", source=source["contacts"], **joined)
-        windows = plot.patches("xs", "ys", source=source["windows"], **violet)
+        contacts = draw(plot, Patches, "xs", "ys", source=source["contacts"], **joined)
+        windows = draw(plot, Patches, "xs", "ys", source=source["windows"], **violet)
         dashed: dict[str, Any] = {"line_color": palette.INK, "line_width": 1.4, "line_dash": [6, 3]}
-        plot.patch("x", "y", source=source["hanging bands"], fill_alpha=0, **dashed)
-        plot.multi_line("xs", "ys", source=source["marks"], line_color=palette.PAPER, line_width=6)
-        plot.multi_line(
-            "xs", "ys", source=source["marks"], line_color=palette.ACCENT_DEEP, line_width=3
+        draw(plot, Patch, "x", "y", source=source["hanging bands"], fill_alpha=0, **dashed)
+        draw(
+            plot,
+            MultiLine,
+            "xs",
+            "ys",
+            source=source["marks"],
+            line_color=palette.PAPER,
+            line_width=6,
+        )
+        draw(
+            plot,
+            MultiLine,
+            "xs",
+            "ys",
+            source=source["marks"],
+            line_color=palette.ACCENT_DEEP,
+            line_width=3,
         )
         ends = ("x0", "y0", "x1", "y1")
         here: dict[str, Any] = {
@@ -271,10 +292,18 @@ class FacesView(Picture):
             "line_width": 1.4,
             "line_dash": "dotdash",
         }
-        plot.segment(*ends, source=source["section"], **here)
+        draw(plot, Segment, *ends, source=source["section"], **here)
         for name, align in (("names left", "right"), ("names right", "left")):
-            plot.segment(
-                "x0", "y0", "x1", "y", source=source[name], line_color=palette.QUIET, line_width=0.8
+            draw(
+                plot,
+                Segment,
+                "x0",
+                "y0",
+                "x1",
+                "y",
+                source=source[name],
+                line_color=palette.QUIET,
+                line_width=0.8,
             )
             write(plot, source[name], text_align=align, text_font_size=SMALL_SIZE)
         write(
@@ -288,14 +317,17 @@ class FacesView(Picture):
         add_key(
             plot,
             [
-                ("sand on the footwall side", plot.patches("xs", "ys", source=shape, **sand)),
+                (
+                    "sand on the footwall side",
+                    draw(plot, Patches, "xs", "ys", source=shape, **sand),
+                ),
                 (
                     "sand on the hanging-wall side",
-                    plot.patches("xs", "ys", source=shape, fill_alpha=0, **dashed),
+                    draw(plot, Patches, "xs", "ys", source=shape, fill_alpha=0, **dashed),
                 ),
-                ("window", plot.patches("xs", "ys", source=shape, **violet)),
-                ("unfaulted contact", plot.patches("xs", "ys", source=shape, **joined)),
-                ("section", plot.segment(*ends, source=line, **here)),
+                ("window", draw(plot, Patches, "xs", "ys", source=shape, **violet)),
+                ("unfaulted contact", draw(plot, Patches, "xs", "ys", source=shape, **joined)),
+                ("section", draw(plot, Segment, *ends, source=line, **here)),
             ],
             columns=3,
         )

@@ -8,6 +8,17 @@ from typing import Any
 import numpy as np
 from bokeh.models import ColumnDataSource, FixedTicker
 from bokeh.models.annotations.legends import Legend, LegendItem
+from bokeh.models.glyph import Glyph
+from bokeh.models.glyphs import (
+    MultiLine,
+    Patch,
+    Patches,
+    Quad,
+    Rect,
+    Scatter,
+    Segment,
+    Text,
+)
 from bokeh.models.renderers.glyph_renderer import GlyphRenderer
 from bokeh.plotting import figure
 from numpy.typing import NDArray
@@ -22,6 +33,7 @@ __all__ = [
     "add_key",
     "area_text",
     "base_figure",
+    "draw",
     "nice_step",
     "number_text",
     "one_row",
@@ -219,6 +231,42 @@ def area_text(value: float) -> str:
     return f"{number_text(value)} m²"
 
 
+def draw(
+    plot: figure, kind: type[Glyph], *fields: Any, source: ColumnDataSource, **style: Any
+) -> GlyphRenderer[Any]:
+    """Add a glyph to a figure and return its renderer.
+
+    Parameters
+    ----------
+    plot : figure
+    kind : subclass of bokeh's Glyph
+    fields
+        Columns, or values, for the glyph's coordinates in their usual order.
+    source : ColumnDataSource
+    style
+        Properties of the glyph.
+
+    Notes
+    -----
+    bokeh's own methods (`figure.segment` and so on) add copies of every glyph for states that no
+    picture uses; without them a figure is built and stored several times faster.
+    """
+    coordinates = dict(zip(_COORDINATES[kind], fields, strict=False))
+    return plot.add_glyph(source, kind(**coordinates, **style))
+
+
+_COORDINATES: dict[type[Glyph], tuple[str, ...]] = {
+    MultiLine: ("xs", "ys"),
+    Patch: ("x", "y"),
+    Patches: ("xs", "ys"),
+    Quad: ("left", "right", "top", "bottom"),
+    Rect: ("x", "y", "width", "height"),
+    Scatter: ("x", "y"),
+    Segment: ("x0", "y0", "x1", "y1"),
+    Text: ("x", "y", "text"),
+}
+
+
 def write(plot: figure, source: ColumnDataSource, **style: Any) -> GlyphRenderer[Any]:
     """Add text to a figure from the columns x, y and text of a source."""
     settings: dict[str, Any] = {
@@ -227,7 +275,7 @@ def write(plot: figure, source: ColumnDataSource, **style: Any) -> GlyphRenderer
         "text_color": INK,
         "text_baseline": "middle",
     }
-    return plot.text("x", "y", "text", source=source, **(settings | style))
+    return draw(plot, Text, "x", "y", "text", source=source, **(settings | style))
 
 
 def tooltip(*rows: tuple[str, str]) -> str:

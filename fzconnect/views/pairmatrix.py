@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from bokeh.models import ColumnDataSource, LinearColorMapper, Range1d
+from bokeh.models.glyphs import Rect, Scatter
 
 from fzconnect.views import palette
 from fzconnect.views.look import (
@@ -14,6 +15,7 @@ from fzconnect.views.look import (
     add_key,
     area_text,
     base_figure,
+    draw,
     one_row,
     relabel,
     set_range,
@@ -128,7 +130,9 @@ class PairMatrixView(Picture):
         for axis in plot.axis:
             axis.update(major_tick_line_color=None, axis_line_color=None)
         plot.xaxis[0].update(major_label_orientation=0.7, major_label_text_font_size=SMALL_SIZE)
-        cells = plot.rect(
+        cells = draw(
+            plot,
+            Rect,
             "x",
             "y",
             1,
@@ -138,7 +142,9 @@ class PairMatrixView(Picture):
             line_color=palette.RULE,
             line_width=1,
         )
-        plot.scatter(
+        draw(
+            plot,
+            Scatter,
             "x",
             "y",
             source=source["cells"],
@@ -149,7 +155,9 @@ class PairMatrixView(Picture):
             line_width=2.4,
         )
         for colour, width in ((palette.PAPER, 7), (palette.ACCENT_DEEP, 3.5)):
-            plot.rect(
+            draw(
+                plot,
+                Rect,
                 "x",
                 "y",
                 1,
@@ -162,7 +170,9 @@ class PairMatrixView(Picture):
         items = []
         for number, words in enumerate(OUTCOMES.values()):
             ink = palette.ACCENT if _INKS[number] == palette.PAPER else _INKS[number]
-            glyph = plot.scatter(
+            glyph = draw(
+                plot,
+                Scatter,
                 "x",
                 "y",
                 source=one_row(x=np.nan, y=np.nan),

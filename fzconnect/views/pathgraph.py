@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from bokeh.models import ColumnDataSource, Range1d
+from bokeh.models.glyphs import Rect, Scatter, Segment
 
 from fzconnect.views import palette
 from fzconnect.views.look import (
@@ -15,6 +16,7 @@ from fzconnect.views.look import (
     add_key,
     area_text,
     base_figure,
+    draw,
     one_row,
     relabel,
     set_range,
@@ -204,21 +206,37 @@ class PathwayGraphView(Picture):
             axis_line_color=None,
         )
         ends = ("x0", "y0", "x1", "y1")
-        plot.segment(*ends, source=source["columns"], line_color=palette.RULE, line_width=1)
+        draw(plot, Segment, *ends, source=source["columns"], line_color=palette.RULE, line_width=1)
         violet: dict[str, Any] = {
             "line_color": palette.ACCENT,
             "line_alpha": 0.62,
             "line_cap": "butt",
         }
-        windows = plot.segment(*ends, source=source["windows"], line_width="width", **violet)
-        contacts = plot.segment(
-            *ends, source=source["contacts"], line_width="width", line_dash=[2, 3], **violet
+        windows = draw(plot, Segment, *ends, source=source["windows"], line_width="width", **violet)
+        contacts = draw(
+            plot,
+            Segment,
+            *ends,
+            source=source["contacts"],
+            line_width="width",
+            line_dash=[2, 3],
+            **violet,
         )
-        plot.segment(
-            *ends, source=source["marked edges"], line_color=palette.PAPER, line_width="casing"
+        draw(
+            plot,
+            Segment,
+            *ends,
+            source=source["marked edges"],
+            line_color=palette.PAPER,
+            line_width="casing",
         )
-        plot.segment(
-            *ends, source=source["marked edges"], line_color=palette.ACCENT_DEEP, line_width="width"
+        draw(
+            plot,
+            Segment,
+            *ends,
+            source=source["marked edges"],
+            line_color=palette.ACCENT_DEEP,
+            line_width="width",
         )
         diamond: dict[str, Any] = {
             "marker": "diamond",
@@ -227,8 +245,10 @@ class PathwayGraphView(Picture):
             "line_color": palette.ACCENT_DEEP,
             "line_width": 2,
         }
-        plot.scatter("x", "y", source=source["critical"], **diamond)
-        plot.rect(
+        draw(plot, Scatter, "x", "y", source=source["critical"], **diamond)
+        draw(
+            plot,
+            Rect,
             "x",
             "y",
             2 * _HALF + 0.06,
@@ -239,7 +259,9 @@ class PathwayGraphView(Picture):
             line_width=2,
         )
         bar: dict[str, Any] = {"line_color": palette.INK, "line_width": 1}
-        nodes = plot.rect(
+        nodes = draw(
+            plot,
+            Rect,
             "x",
             "y",
             2 * _HALF,
@@ -260,8 +282,16 @@ class PathwayGraphView(Picture):
             ),
         ):
             write(plot, source[name], **style)
-        plot.segment(
-            "x0", "y0", "x1", "y", source=source["names"], line_color=palette.QUIET, line_width=0.8
+        draw(
+            plot,
+            Segment,
+            "x0",
+            "y0",
+            "x1",
+            "y",
+            source=source["names"],
+            line_color=palette.QUIET,
+            line_width=0.8,
         )
         line: dict[str, Any] = {"x0": 0.0, "y0": 0.0, "x1": 0.0, "y1": 0.0}
         dotted = violet | {"line_dash": [2, 3]}
@@ -270,7 +300,9 @@ class PathwayGraphView(Picture):
             [
                 (
                     "sand, as tall as it is thick",
-                    plot.rect(
+                    draw(
+                        plot,
+                        Rect,
                         "x0",
                         "y0",
                         0,
@@ -282,15 +314,17 @@ class PathwayGraphView(Picture):
                 ),
                 (
                     "window, wider for a larger area",
-                    plot.segment(*ends, source=one_row(**line), line_width=7, **violet),
+                    draw(plot, Segment, *ends, source=one_row(**line), line_width=7, **violet),
                 ),
                 (
                     "unfaulted contact",
-                    plot.segment(*ends, source=one_row(**line), line_width=5, **dotted),
+                    draw(plot, Segment, *ends, source=one_row(**line), line_width=5, **dotted),
                 ),
                 (
                     "critical window",
-                    plot.scatter("x0", "y0", source=one_row(x0=np.nan, y0=np.nan), **diamond),
+                    draw(
+                        plot, Scatter, "x0", "y0", source=one_row(x0=np.nan, y0=np.nan), **diamond
+                    ),
                 ),
             ],
             columns=2,

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from bokeh.models import ColumnDataSource, DataRange1d, LinearAxis, LinearColorMapper
+from bokeh.models.glyphs import MultiLine, Patches, Quad, Segment
 from numpy.typing import NDArray
 
 from fzconnect.views import palette
@@ -16,6 +17,7 @@ from fzconnect.views.look import (
     add_key,
     area_text,
     base_figure,
+    draw,
     number_text,
     one_row,
     relabel,
@@ -40,6 +42,7 @@ Array = NDArray[np.float64]
 _STRETCHES = (1, 2, 3, 5, 10, 20, 50)
 _WIDE_ENOUGH = 0.32
 """Part of the depth range that the zone should cover across before it needs no stretching."""
+_TOO_WIDE = 0.8
 _BESIDE = 0.22
 """Part of the depth range shown of the footwall and of the hanging wall."""
 _TOO_SMALL = 1e-6
@@ -56,9 +59,10 @@ class SectionView(Picture):
         How many times distances across the fault are stretched; 1 is equal scale.
     """
 
-    def __init__(self, study: Study, distance: float, height: int) -> None:
+    def __init__(self, study: Study, distance: float, height: int, stretch: int | None) -> None:
         super().__init__()
         self.stretch = 0
+        self._wanted_stretch = stretch
         self._height = height
         self._zone: FaultZone | None = None
         self._sources = {name: ColumnDataSource() for name in _EMPTY}
@@ -107,9 +111,7 @@ class SectionView(Picture):
         slope = 1.0 / np.tan(np.radians(zone.dip)) if zone.dip < 90.0 else 0.0
         column = float((depths.max(axis=0) - depths.min(axis=0)).max())
         across = float(zone.lens_width.sum()) + slope * column
-        fits = [n for n in _STRETCHES if n == 1 or across * n <= 0.8 * span]
-        wide = [n for n in fits if across * n >= _WIDE_ENOUGH * span]
-        stretch = wide[0] if wide else fits[-1]
+        stretch = self._wanted_stretch or _stretch(across / span)
         if stretch != self.stretch:
             self.stretch = stretch
             self.figure.aspect_scale = float(stretch)
@@ -311,8 +313,17 @@ class SectionView(Picture):
             axis.update(axis_line_color=None, major_tick_out=4, major_tick_in=0)
         plot.left = [self._name_axes[0], *plot.left]  # names stand next to the rock
         plot.right = [self._name_axes[1], *plot.right]
-        frame = plot.quad(
-            "left", "right", "top", "bottom", source=source["frame"], fill_alpha=0, line_alpha=0
+        plot.yaxis[1].axis_line_color = None
+        frame = draw(
+            plot,
+            Quad,
+            "left",
+            "right",
+            "top",
+            "bottom",
+            source=source["frame"],
+            fill_alpha=0,
+            line_alpha=0,
         )
         x_range.renderers = [frame]
         y_range.renderers = [frame]
@@ -332,24 +343,36 @@ class SectionView(Picture):
                 "hatch_scale": 7,
                 "hatch_weight": 1,
             }
-            layers[name] = plot.patches(
+            layers[name] = draw(
+                plot,
+                Patches,
                 "xs",
                 "ys",
                 source=source[name],
                 fill_color={"field": "vsh", "transform": mapper},
                 **style,
             )
-            layers[f"{name} key"] = plot.patches(
+            layers[f"{name} key"] = draw(
+                plot,
+                Patches,
                 "xs",
                 "ys",
                 source=one_row(xs=[0.0], ys=[0.0]),
                 fill_color=colours[len(colours) // 3],
                 **style,
             )
-        plot.multi_line(
-            "xs", "ys", source=source["marked sands"], line_color=palette.PAPER, line_width=5
+        draw(
+            plot,
+            MultiLine,
+            "xs",
+            "ys",
+            source=source["marked sands"],
+            line_color=palette.PAPER,
+            line_width=5,
         )
-        plot.multi_line(
+        draw(
+            plot,
+            MultiLine,
             "xs",
             "ys",
             source=source["marked sands"],
@@ -357,10 +380,12 @@ class SectionView(Picture):
             line_width=2.5,
         )
         ends = ("x0", "y0", "x1", "y1")
-        strands = plot.segment(
-            *ends, source=source["strands"], line_color=palette.INK, line_width=2.2
+        strands = draw(
+            plot, Segment, *ends, source=source["strands"], line_color=palette.INK, line_width=2.2
         )
-        tips = plot.segment(
+        tips = draw(
+            plot,
+            Segment,
             *ends,
             source=source["tips"],
             line_color=palette.INK,
@@ -368,28 +393,51 @@ class SectionView(Picture):
             line_width=1.2,
             line_dash=[5, 4],
         )
-        plot.segment(
-            *ends, source=source["contacts"], line_color=palette.PAPER, line_width=5, line_alpha=0.7
+        draw(
+            plot,
+            Segment,
+            *ends,
+            source=source["contacts"],
+            line_color=palette.PAPER,
+            line_width=5,
+            line_alpha=0.7,
         )
-        contacts = plot.segment(
+        contacts = draw(
+            plot,
+            Segment,
             *ends,
             source=source["contacts"],
             line_color=palette.ACCENT,
             line_width=3,
             line_dash=[2, 3],
         )
-        plot.segment(*ends, source=source["windows"], line_color=palette.PAPER, line_width=9)
-        windows = plot.segment(
-            *ends, source=source["windows"], line_color=palette.ACCENT, line_width=6
+        draw(plot, Segment, *ends, source=source["windows"], line_color=palette.PAPER, line_width=9)
+        windows = draw(
+            plot, Segment, *ends, source=source["windows"], line_color=palette.ACCENT, line_width=6
         )
-        plot.segment(*ends, source=source["marks"], line_color=palette.PAPER, line_width=15)
-        plot.segment(*ends, source=source["marks"], line_color=palette.ACCENT_DEEP, line_width=10)
+        draw(plot, Segment, *ends, source=source["marks"], line_color=palette.PAPER, line_width=15)
+        draw(
+            plot,
+            Segment,
+            *ends,
+            source=source["marks"],
+            line_color=palette.ACCENT_DEEP,
+            line_width=10,
+        )
         for name, colour, weight in (
             ("strand names", palette.INK, "bold"),
             ("block names", palette.QUIET, "normal"),
         ):
-            plot.segment(
-                "x0", "y0", "x", "y1", source=source[name], line_color=palette.QUIET, line_width=0.8
+            draw(
+                plot,
+                Segment,
+                "x0",
+                "y0",
+                "x",
+                "y1",
+                source=source[name],
+                line_color=palette.QUIET,
+                line_width=0.8,
             )
             write(
                 plot,
@@ -404,12 +452,12 @@ class SectionView(Picture):
         add_key(
             plot,
             [
-                ("sand, darker with clay", layers["sands key"]),
+                ("sand", layers["sands key"]),
                 ("shale", layers["shales key"]),
                 ("strand", strands),
                 ("window", _key_line(plot, palette.ACCENT, 6)),
                 ("unfaulted contact", _key_line(plot, palette.ACCENT, 3, [2, 3])),
-                ("no strand here (tip)", _key_line(plot, palette.QUIET, 1.2, [5, 4])),
+                ("tip: no strand", _key_line(plot, palette.QUIET, 1.2, [5, 4])),
             ],
             columns=3,
         )
@@ -462,8 +510,8 @@ _EMPTY: dict[str, tuple[str, ...]] = {
 def _key_line(plot: Any, colour: str, width: float, dash: Any = "solid") -> Any:
     """Return a line that only the key shows."""
     source = one_row(x0=0.0, y0=0.0, x1=0.0, y1=0.0)
-    return plot.segment(
-        *_SEGMENT, source=source, line_color=colour, line_width=width, line_dash=dash
+    return draw(
+        plot, Segment, *_SEGMENT, source=source, line_color=colour, line_width=width, line_dash=dash
     )
 
 
@@ -481,7 +529,15 @@ def _at(zone: FaultZone, values: Array, distance: float) -> Array:
     return np.array([np.interp(distance, zone.stations, row) for row in values])
 
 
-def section_figure(study: Study, distance: float, *, height: int = 540) -> SectionView:
+def _stretch(part: float) -> int:
+    """Return how many times to stretch a zone that is `part` as wide across as it is deep."""
+    fits = [n for n in _STRETCHES if n == 1 or part * n <= _TOO_WIDE]
+    return next((n for n in fits if part * n >= _WIDE_ENOUGH), fits[-1])
+
+
+def section_figure(
+    study: Study, distance: float, *, height: int = 540, stretch: int | None = None
+) -> SectionView:
     """Return the section across a study's zone at a distance along the fault.
 
     Parameters
@@ -491,6 +547,9 @@ def section_figure(study: Study, distance: float, *, height: int = 540) -> Secti
         m along the fault.
     height : int, default 540
         Pixels.
+    stretch : int, optional
+        How many times distances across the fault are stretched. Default: equal scale, or, for a
+        zone too narrow to be seen, the least stretching that makes it visible; the axis says so.
 
     Returns
     -------
@@ -503,4 +562,4 @@ def section_figure(study: Study, distance: float, *, height: int = 540) -> Secti
     NetworkError
         If the distance is not on the fault.
     """
-    return SectionView(study, distance, height)
+    return SectionView(study, distance, height, stretch)

@@ -77,8 +77,12 @@ class FaultZone:
     porosity: Array | None = None
 
     def __post_init__(self) -> None:
-        for array in (self.stations, self.footwall, self.hanging_wall, self.shares, self.faces):
-            array.setflags(write=False)
+        # own copies that cannot be written: a zone that changed would belie its windows
+        for name, value in vars(self).items():
+            if isinstance(value, np.ndarray):
+                own = np.array(value)
+                own.setflags(write=False)
+                object.__setattr__(self, name, own)
 
     @classmethod
     def from_scenario(cls, scenario: Scenario) -> Self:

@@ -157,11 +157,11 @@ class FaultNetwork:
         return self.component[source] == self.component[target]
 
     def bottleneck(self, hanging_wall_sand: str, footwall_sand: str) -> float:
-        """Return the area, m2, of the smallest window on the widest pathway; 0 if there is none."""
+        """Return the least area, m2, shared by two sand bodies on the widest pathway; 0 if none."""
         return self.bottlenecks.get(self.ends(hanging_wall_sand, footwall_sand), 0.0)
 
     def widest(self, hanging_wall_sand: str, footwall_sand: str) -> Pathway | None:
-        """Return the pathway whose smallest window is the largest possible, None if none exists."""
+        """Return the pathway whose bottleneck is as wide as can be, None if there is none."""
         nodes = self.widest_tree.path(*self.ends(hanging_wall_sand, footwall_sand))
         return Pathway.along(self.graph, nodes) if nodes else None
 

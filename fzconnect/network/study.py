@@ -30,7 +30,8 @@ class Pair:
     connected, connected_single_plane : bool
         Whether the one reaches the other across the zone, and across one plane with all the throw.
     bottleneck_area, bottleneck_area_single_plane : float
-        Smallest window on the widest pathway, m2; 0 where not connected.
+        Bottleneck of the widest pathway: the least area that two sand bodies on it share, m2 (all
+        their windows on that strand together); 0 where not connected.
     """
 
     hanging_wall_sand: str

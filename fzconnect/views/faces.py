@@ -44,6 +44,7 @@ _GAP = 0.07
 """Gap between facets, part of the fault's length."""
 _LEADER = 0.035
 """Length of the line from a band to its name, part of the width of all facets."""
+_NARROW = 480  # px across that a narrow figure has for its facets
 _AXES = 150  # px that title, key and axis take from the figure's height
 _UNSEEN = 0.35
 """Part of a pixel by which an outline may be off."""
@@ -98,19 +99,23 @@ class FacesView(Picture):
         self._top, self._base = top - pad, base + pad
         self._pixel = (base - top + 2 * pad) / max(1, self._height - _AXES)
         longest = max(len(body.name) for body in zone.bodies)
-        # names stand outside the first and the last facet; about 900 px is a usual width
-        beside = (0.03 + 0.009 * min(longest, 12)) * self._end + _LEADER * self._end
+        # names stand outside the first and the last facet, also in a narrow figure
+        beside = (_LEADER + (8 * min(longest, 12) + 16) / _NARROW) * self._end
         set_range(self.figure.x_range, -beside, self._end + beside)
         set_range(self.figure.y_range, self._base, self._top - 22 * self._pixel)
-        step = nice_step(length, 4 if count <= 3 else 3 if count <= 4 else 2 if count <= 6 else 1)
+        step = nice_step(length, 4 if count <= 3 else 2 if count <= 4 else 1)
         ticks = np.arange(np.ceil(first / step) * step, first + length + 1e-6 * step, step)
         labels = {
             float(offset + tick - first): number_text(float(tick))
             for offset in self._offsets
             for tick in ticks
+            # the last label of a facet would run into the first one of the next
+            if offset == self._offsets[-1] or tick - first <= 0.88 * length
         }
         relabel(self.figure.xaxis[0], labels)
-        prefix = "strand " if count <= 6 else ""
+        ends = f"{number_text(first)} to {number_text(first + length)}"
+        self.figure.xaxis[0].axis_label = f"Distance along the fault, m ({ends} in every frame)"
+        prefix = "strand " if count <= 4 else ""
         self._sources["titles"].data = {
             "x": self._offsets,
             "y": np.full(count, self._top - 11 * self._pixel),
@@ -223,7 +228,7 @@ class FacesView(Picture):
         source = self._sources
         plot = self.figure = base_figure(
             self._height,
-            title="Strand faces: what touches what on every strand",
+            title="Strand faces",
             x_range=Range1d(start=0, end=1),
             y_range=Range1d(start=1, end=0),
             x_axis_label="Distance along the fault, m",
@@ -318,11 +323,11 @@ class FacesView(Picture):
             plot,
             [
                 (
-                    "sand on the footwall side",
+                    "footwall-side sand",
                     draw(plot, Patches, "xs", "ys", source=shape, **sand),
                 ),
                 (
-                    "sand on the hanging-wall side",
+                    "hanging-wall-side sand",
                     draw(plot, Patches, "xs", "ys", source=shape, fill_alpha=0, **dashed),
                 ),
                 ("window", draw(plot, Patches, "xs", "ys", source=shape, **violet)),

@@ -32,9 +32,9 @@ __all__ = ["OUTCOMES", "PairMatrixView", "outcome", "pair_matrix_figure"]
 
 OUTCOMES: dict[tuple[bool, bool], str] = {
     (True, True): "connected in both",
-    (True, False): "gained: only the zone connects",
-    (False, True): "lost: only the single plane connects",
-    (False, False): "neither connects",
+    (True, False): "gained: only the zone",
+    (False, True): "lost: only the single plane",
+    (False, False): "neither",
 }
 """What a cell says, by (connected across the zone, connected across the single plane)."""
 

@@ -143,7 +143,7 @@ class PathwayGraphView(Picture):
         longest = max(len(body.name) for body in zone.bodies)
         beside = (0.28 + 0.022 * min(longest, 14)) * max(1.0, last / 2.5)
         set_range(self.figure.x_range, -beside - _HALF, last + beside + _HALF)
-        titles = [name.replace(" ", "\n") if last > 5 else name for name in blocks]
+        titles = [name.replace(" ", "\n") if last > 3 else name for name in blocks]
         relabel(self.figure.xaxis[0], {float(j): name for j, name in enumerate(titles)})
         prefix = "strand " if last < 5 else ""
         self._sources["strands"].data = {
@@ -192,7 +192,7 @@ class PathwayGraphView(Picture):
         source = self._sources
         plot = self.figure = base_figure(
             self._height,
-            title="Pathway graph: sands of every block and the windows between them",
+            title="Pathway graph",
             x_range=Range1d(start=0, end=1),
             y_range=Range1d(start=1, end=0),
             y_axis_label="Middle depth of the sand, m",

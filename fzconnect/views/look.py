@@ -33,6 +33,7 @@ __all__ = [
     "add_key",
     "area_text",
     "base_figure",
+    "block_text",
     "draw",
     "nice_step",
     "number_text",
@@ -265,6 +266,17 @@ _COORDINATES: dict[type[Glyph], tuple[str, ...]] = {
     Segment: ("x0", "y0", "x1", "y1"),
     Text: ("x", "y", "text"),
 }
+
+
+def block_text(block: str) -> str:
+    """Return a block's name as it stands in a sentence.
+
+    Examples
+    --------
+    >>> block_text("footwall"), block_text("lens 1")
+    ('the footwall', 'lens 1')
+    """
+    return block if block.startswith("lens") else f"the {block}"
 
 
 def write(plot: figure, source: ColumnDataSource, **style: Any) -> GlyphRenderer[Any]:

@@ -16,6 +16,7 @@ from fzconnect.views.look import (
     add_key,
     area_text,
     base_figure,
+    block_text,
     draw,
     one_row,
     relabel,
@@ -96,7 +97,7 @@ class PathwayGraphView(Picture):
                 "thickness": thick,
                 "crest": np.array([n["crest_depth"] for n in nodes]),
                 "name": [n["sand"] for n in nodes],
-                "block": [n["block_name"] for n in nodes],
+                "block": [block_text(n["block_name"]) for n in nodes],
             },
         )
 
@@ -337,7 +338,7 @@ class PathwayGraphView(Picture):
             ("alone on its way:", "@critical"),
         )
         node_card = tooltip(
-            ("@name", "in the @block"),
+            ("@name", "in @block"),
             ("mean thickness", "@thickness{0.0} m"),
             ("mean vsh", "@vsh{0.00}"),
             ("crest", "@crest{0} m"),

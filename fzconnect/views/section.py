@@ -5,30 +5,21 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
-from bokeh.models import ColumnDataSource, DataRange1d, LinearAxis, LinearColorMapper
-from bokeh.models.glyphs import MultiLine, Patches, Quad, Segment
 from numpy.typing import NDArray
 
-from fzconnect.views import palette
 from fzconnect.views.look import (
-    LABEL_SIZE,
     LINE,
-    SMALL_SIZE,
-    add_key,
     area_text,
-    base_figure,
-    draw,
+    block_text,
     number_text,
-    one_row,
     relabel,
     set_title,
     spread,
-    style_axis,
     thinned,
     tooltip,
-    write,
 )
 from fzconnect.views.picture import Picture
+from fzconnect.views.sectionplot import section_plot, section_sources
 from fzconnect.views.selection import Selection, of_edge, of_node
 
 if TYPE_CHECKING:
@@ -65,13 +56,11 @@ class SectionView(Picture):
         self._wanted_stretch = stretch
         self._height = height
         self._zone: FaultZone | None = None
-        self._sources = {name: ColumnDataSource() for name in _EMPTY}
-        for name, columns in _EMPTY.items():
-            self._sources[name].data = {column: [] for column in columns}
-        self._build()
+        self._sources = section_sources()
+        self._plot = section_plot(self._sources, height)
+        self.figure = self._plot.figure
+        self._listen()
         self.update(study, distance)
-
-    # ------------------------------------------------------------------ what is drawn
 
     def update(self, study: Study, distance: float) -> None:
         """Show another study or another distance, m.
@@ -142,7 +131,7 @@ class SectionView(Picture):
         corners_x = np.stack([left[:, :-1], right[:, :-1], right[:, 1:], left[:, 1:]], axis=-1)
         corners_y = np.stack([depth[:, :-1], depth[:, :-1], depth[:, 1:], depth[:, 1:]], axis=-1)
         vsh = np.array([zone.across(zone.vsh, block) for block in range(len(depth))])
-        sand, blocks = np.array(zone.is_sand), zone.block_names
+        sand, blocks = np.array(zone.is_sand), [block_text(name) for name in zone.block_names]
         for source, chosen in (("sands", sand), ("shales", ~sand)):
             layers = [zone.layer_names[i] for i in np.flatnonzero(chosen)]
             self._replace(
@@ -150,7 +139,7 @@ class SectionView(Picture):
                 {
                     "xs": np.round(corners_x[:, chosen].reshape(-1, 4), 2).tolist(),
                     "ys": np.round(corners_y[:, chosen].reshape(-1, 4), 2).tolist(),
-                    "name": [f"{name} in the {block}" for block in blocks for name in layers],
+                    "name": [f"{name} in {block}" for block in blocks for name in layers],
                     "vsh": vsh[:, chosen].ravel(),
                     "top": depth[:, :-1][:, chosen].ravel(),
                     "base": depth[:, 1:][:, chosen].ravel(),
@@ -263,7 +252,7 @@ class SectionView(Picture):
         """Label sand bodies on both edges of the picture, the thickest where room is short."""
         first = [body.first for body in zone.bodies]
         past = [body.last + 1 for body in zone.bodies]
-        for axis, block in zip(self._name_axes, (0, -1), strict=True):
+        for axis, block in zip(self._plot.name_axes, (0, -1), strict=True):
             depth = section.boundaries[block]
             middle, thick = 0.5 * (depth[first] + depth[past]), depth[past] - depth[first]
             kept = thinned(middle, thick, 0.95 * LINE * self._pixel)
@@ -293,174 +282,9 @@ class SectionView(Picture):
             ys.append([*y_top[:2].tolist(), *y_base[2:].tolist(), float(y_top[0])])
         self._replace(self._sources["marked sands"], {"xs": xs, "ys": ys})
 
-    # ------------------------------------------------------------------ built once
-
-    def _build(self) -> None:
-        source = self._sources
-        x_range = DataRange1d(range_padding=0)
-        y_range = DataRange1d(flipped=True, range_padding=0)
-        plot = self.figure = base_figure(
-            self._height,
-            x_range=x_range,
-            y_range=y_range,
-            match_aspect=True,
-            y_axis_label="Depth, m",
-            x_axis_label="Across the fault, m",
-        )
-        self._name_axes = (LinearAxis(), LinearAxis())
-        for axis in self._name_axes:
-            style_axis(axis)
-            axis.update(axis_line_color=None, major_tick_out=4, major_tick_in=0)
-        plot.left = [self._name_axes[0], *plot.left]  # names stand next to the rock
-        plot.right = [self._name_axes[1], *plot.right]
-        plot.yaxis[1].axis_line_color = None
-        frame = draw(
-            plot,
-            Quad,
-            "left",
-            "right",
-            "top",
-            "bottom",
-            source=source["frame"],
-            fill_alpha=0,
-            line_alpha=0,
-        )
-        x_range.renderers = [frame]
-        y_range.renderers = [frame]
-        shades = {
-            "shales": (palette.SHALES, palette.SHALE_SCALE, palette.SHALE_EDGE, None),
-            "sands": (palette.SANDS, palette.SAND_SCALE, palette.SAND_EDGE, "dot"),
-        }
-        layers = {}
-        for name, (colours, (low, high), edge, hatch) in shades.items():
-            mapper = LinearColorMapper(palette=list(colours), low=low, high=high)
-            style: dict[str, Any] = {
-                "line_color": edge,
-                "line_width": 0.8 if hatch else 0.4,
-                "hatch_pattern": hatch,
-                "hatch_color": palette.SAND_EDGE,
-                "hatch_alpha": 0.55,
-                "hatch_scale": 7,
-                "hatch_weight": 1,
-            }
-            layers[name] = draw(
-                plot,
-                Patches,
-                "xs",
-                "ys",
-                source=source[name],
-                fill_color={"field": "vsh", "transform": mapper},
-                **style,
-            )
-            layers[f"{name} key"] = draw(
-                plot,
-                Patches,
-                "xs",
-                "ys",
-                source=one_row(xs=[0.0], ys=[0.0]),
-                fill_color=colours[len(colours) // 3],
-                **style,
-            )
-        draw(
-            plot,
-            MultiLine,
-            "xs",
-            "ys",
-            source=source["marked sands"],
-            line_color=palette.PAPER,
-            line_width=5,
-        )
-        draw(
-            plot,
-            MultiLine,
-            "xs",
-            "ys",
-            source=source["marked sands"],
-            line_color=palette.ACCENT_DEEP,
-            line_width=2.5,
-        )
-        ends = ("x0", "y0", "x1", "y1")
-        strands = draw(
-            plot, Segment, *ends, source=source["strands"], line_color=palette.INK, line_width=2.2
-        )
-        tips = draw(
-            plot,
-            Segment,
-            *ends,
-            source=source["tips"],
-            line_color=palette.INK,
-            line_alpha=0.55,
-            line_width=1.2,
-            line_dash=[5, 4],
-        )
-        draw(
-            plot,
-            Segment,
-            *ends,
-            source=source["contacts"],
-            line_color=palette.PAPER,
-            line_width=5,
-            line_alpha=0.7,
-        )
-        contacts = draw(
-            plot,
-            Segment,
-            *ends,
-            source=source["contacts"],
-            line_color=palette.ACCENT,
-            line_width=3,
-            line_dash=[2, 3],
-        )
-        draw(plot, Segment, *ends, source=source["windows"], line_color=palette.PAPER, line_width=9)
-        windows = draw(
-            plot, Segment, *ends, source=source["windows"], line_color=palette.ACCENT, line_width=6
-        )
-        draw(plot, Segment, *ends, source=source["marks"], line_color=palette.PAPER, line_width=15)
-        draw(
-            plot,
-            Segment,
-            *ends,
-            source=source["marks"],
-            line_color=palette.ACCENT_DEEP,
-            line_width=10,
-        )
-        for name, colour, weight in (
-            ("strand names", palette.INK, "bold"),
-            ("block names", palette.QUIET, "normal"),
-        ):
-            draw(
-                plot,
-                Segment,
-                "x0",
-                "y0",
-                "x",
-                "y1",
-                source=source[name],
-                line_color=palette.QUIET,
-                line_width=0.8,
-            )
-            write(
-                plot,
-                source[name],
-                angle="angle",
-                text_align="align",
-                text_baseline="baseline",
-                text_font_size=LABEL_SIZE if weight == "bold" else SMALL_SIZE,
-                text_font_style=weight,
-                text_color=colour,
-            )
-        add_key(
-            plot,
-            [
-                ("sand", layers["sands key"]),
-                ("shale", layers["shales key"]),
-                ("strand", strands),
-                ("window", _key_line(plot, palette.ACCENT, 6)),
-                ("unfaulted contact", _key_line(plot, palette.ACCENT, 3, [2, 3])),
-                ("tip: no strand", _key_line(plot, palette.QUIET, 1.2, [5, 4])),
-            ],
-            columns=3,
-        )
+    def _listen(self) -> None:
+        """Give the glyphs their hover cards, and let windows, contacts and sands be tapped."""
+        drawn = self._plot.renderers
         card = tooltip(
             ("@name", ""),
             ("vsh", "@vsh{0.00}"),
@@ -479,40 +303,16 @@ class SectionView(Picture):
             ("share here", "@share{0} %"),
         )
         self._make_hoverable(
-            (layers["sands"], card),
-            (layers["shales"], card),
-            (windows, window),
-            (contacts, window),
-            (strands, strand),
-            (tips, strand),
+            (drawn["sands"], card),
+            (drawn["shales"], card),
+            (drawn["windows"], window),
+            (drawn["contacts"], window),
+            (drawn["strands"], strand),
+            (drawn["tips"], strand),
         )
-        self._make_tappable({"windows": windows, "contacts": contacts, "sands": layers["sands"]})
-
-
-_SEGMENT = ("x0", "y0", "x1", "y1")
-_LAYER = ("xs", "ys", "name", "vsh", "top", "base", "thickness")
-_TEXT = ("x", "y", "text", "angle", "align", "baseline", "x0", "y0", "y1")
-_EMPTY: dict[str, tuple[str, ...]] = {
-    "frame": ("left", "right", "top", "bottom"),
-    "sands": _LAYER,
-    "shales": _LAYER,
-    "strands": (*_SEGMENT, "name", "throw", "share"),
-    "tips": (*_SEGMENT, "name", "throw", "share"),
-    "windows": (*_SEGMENT, "name", "strand", "area"),
-    "contacts": (*_SEGMENT, "name", "strand", "area"),
-    "strand names": _TEXT,
-    "block names": _TEXT,
-    "marks": _SEGMENT,
-    "marked sands": ("xs", "ys"),
-}
-
-
-def _key_line(plot: Any, colour: str, width: float, dash: Any = "solid") -> Any:
-    """Return a line that only the key shows."""
-    source = one_row(x0=0.0, y0=0.0, x1=0.0, y1=0.0)
-    return draw(
-        plot, Segment, *_SEGMENT, source=source, line_color=colour, line_width=width, line_dash=dash
-    )
+        self._make_tappable(
+            {"windows": drawn["windows"], "contacts": drawn["contacts"], "sands": drawn["sands"]}
+        )
 
 
 def _sides(section: Section, edges: tuple[float, float]) -> tuple[Array, Array]:

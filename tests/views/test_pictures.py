@@ -52,7 +52,7 @@ def test_section_draws_the_layers_of_every_block(small: Study) -> None:
     x, y = section.outline(1, 3, edges)
     assert sands["xs"][3] == pytest.approx(x.tolist())
     assert sands["ys"][3] == pytest.approx(y.tolist()) == [1142, 1142, 1162, 1162]
-    assert sands["name"][3] == "S2 in the lens 1"
+    assert sands["name"][3] == "S2 in lens 1"
     assert (sands["vsh"][3], sands["thickness"][3]) == pytest.approx((0.2, 20))
 
 

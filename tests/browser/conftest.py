@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator, Sequence
 from pathlib import Path
+from statistics import median
 
 import pytest
-
-pytest.importorskip("playwright", reason="the browser tests need the package playwright")
 
 from .lab import Lab, find_browser, launch, missing_browser, start_lab
 
@@ -23,6 +22,27 @@ def lab(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Lab]:
         launch(executable) as browser,
     ):
         yield Lab(server, browser)
+
+
+MEASURED: list[str] = []
+
+
+@pytest.fixture(scope="session")
+def measured() -> Callable[[str, Sequence[float]], float]:
+    """A function that takes times in ms, has them printed after the tests, returns the median."""
+
+    def note(what: str, times: Sequence[float]) -> float:
+        middle = median(times)
+        ends = f"{min(times):.0f} to {max(times):.0f} ms, n={len(times)}"
+        MEASURED.append(f"{what}: median {middle:.0f} ms, {ends}")
+        return middle
+
+    return note
+
+
+def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter) -> None:
+    for line in MEASURED:
+        terminalreporter.write_line(line)
 
 
 @pytest.fixture

@@ -18,7 +18,15 @@ from pathlib import Path
 from typing import NoReturn
 
 import pytest
-from playwright.sync_api import Browser, ConsoleMessage, Locator, Page, Route, sync_playwright
+from playwright.sync_api import (
+    Browser,
+    ConsoleMessage,
+    Locator,
+    Page,
+    Request,
+    Route,
+    sync_playwright,
+)
 
 import fzconnect
 
@@ -36,6 +44,8 @@ FLAGS = [
 ]
 OUTSIDE = re.compile(r"^(?:https?|wss?)://(?!127\.0\.0\.1[:/])")
 TOKEN = "look"
+
+LATE = "Cannot send"
 
 # Console errors that say nothing about our notebooks: text, and why it is let pass.
 HARMLESS: tuple[tuple[re.Pattern[str], str], ...] = ()
@@ -197,10 +207,12 @@ class View:
     failed_requests: list[str] = field(default_factory=list)
     outside_requests: list[str] = field(default_factory=list)
 
+    _leaving: bool = False
+
     def __post_init__(self) -> None:
         self.page.on("console", self._on_console)
         self.page.on("pageerror", lambda error: self.console_errors.append(str(error)))
-        self.page.on("requestfailed", lambda r: self.failed_requests.append(r.url))
+        self.page.on("requestfailed", self._on_failed)
         # Stopped as well as noted, so that a test ends the same with and without a network.
         self.page.context.route(OUTSIDE, self._on_outside)
 
@@ -208,6 +220,11 @@ class View:
         harmless = any(pattern.search(message.text) for pattern, _ in HARMLESS)
         if message.type == "error" and not harmless:
             self.console_errors.append(f"{message.text} ({message.location.get('url')})")
+
+    def _on_failed(self, request: Request) -> None:
+        # A page that is left drops what it was fetching; that is no trouble.
+        if not (self._leaving and request.failure == "net::ERR_ABORTED"):
+            self.failed_requests.append(f"{request.url} ({request.failure})")
 
     def _on_outside(self, route: Route) -> None:
         self.outside_requests.append(route.request.url)
@@ -236,7 +253,9 @@ class View:
 
     def reload(self) -> None:
         """Load the page anew; the kernel lives on."""
+        self._leaving = True
         self.page.reload()
+        self._leaving = False
         self._wait_for_kernel()
 
     def _wait_for_kernel(self) -> None:
@@ -261,6 +280,14 @@ class View:
         prompts = self.page.locator(".jp-CodeCell .jp-InputPrompt").all_inner_texts()
         if not any(re.search(r"\d", prompt) for prompt in prompts):
             pytest.fail(f"no cell was run; the prompts are {prompts}")
+
+    def restart_and_run_all(self, *, limit: float = 240) -> None:
+        """Start the kernel anew, run all cells and wait until they are done."""
+        self.menu("Kernel", "Restart Kernel and Run All Cells…")
+        self.page.locator(".jp-Dialog-button.jp-mod-warn").click()
+        self.wait_until_done(limit=limit)
+        # Widgets of the kernel that is gone may still want to tell it something.
+        self.console_errors[:] = [e for e in self.console_errors if e.split(" (")[0] != LATE]
 
     def run_cell(self, index: int, *, limit: float = 60) -> None:
         """Run one cell, counted from zero, and wait until it is done."""

@@ -253,7 +253,10 @@ def draw(
     picture uses; without them a figure is built and stored several times faster.
     """
     coordinates = dict(zip(_COORDINATES[kind], fields, strict=False))
-    return plot.add_glyph(source, kind(**coordinates, **style))
+    renderer = plot.add_glyph(source, kind(**coordinates, **style))
+    # a tap chooses, and marks are drawn over the data: what is chosen or not keeps its look
+    renderer.update(selection_glyph=None, nonselection_glyph=None)
+    return renderer
 
 
 _COORDINATES: dict[type[Glyph], tuple[str, ...]] = {

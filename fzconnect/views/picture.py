@@ -77,17 +77,25 @@ class Picture(ABC):
         self._callbacks.append(callback)
 
     def _make_tappable(self, renderers: Mapping[str, Any]) -> None:
-        """Let taps choose glyphs of these renderers; a chosen glyph does not change its look."""
+        """Let taps choose glyphs of these renderers."""
         for name, renderer in renderers.items():
-            renderer.selection_glyph = None
-            renderer.nonselection_glyph = None
             self.tappable[name] = renderer.data_source
         self.figure.add_tools(TapTool(renderers=list(renderers.values())))
 
     def _make_hoverable(self, *cards: tuple[GlyphRenderer[Any], str]) -> None:
-        """Give renderers a hover card each."""
+        """Give renderers a hover card each; the first ones left of the pointer, the last one right.
+
+        So two cards stay apart where a window lies over a layer.
+        """
+        last = cards[-1][1]
         for renderer, card in cards:
-            tool = HoverTool(renderers=[renderer], tooltips=card, visible=False)
+            tool = HoverTool(
+                renderers=[renderer],
+                tooltips=card,
+                attachment="right" if card == last else "left",
+                point_policy="follow_mouse",
+                visible=False,
+            )
             self.figure.add_tools(tool)
 
     def _replace(self, source: ColumnDataSource, data: dict[str, Any]) -> None:
@@ -113,7 +121,7 @@ class Picture(ABC):
         chosen: Selection | None = NOTHING
         for name, source in self.tappable.items():
             if source.selected.indices:
-                chosen = self.picked(name, source.selected.indices[0])
+                chosen = self.picked(name, source.selected.indices[-1])  # the one on top
                 break
         # one tap that hits two glyphs arrives as two changes: tell it once
         if chosen is None or chosen == self._reported:

@@ -169,7 +169,6 @@ class SectionView(Picture):
             "y0": [top - reach] * count,
             "x1": (x_base + lean).tolist(),
             "y1": [base + reach] * count,
-            "name": list(zone.strand_names),
             "throw": _at(zone, zone.strand_throw, section.distance).tolist(),
             "share": (100.0 * shares).tolist(),
         }
@@ -187,6 +186,8 @@ class SectionView(Picture):
             "x": spread(start, apart * pixel_x).tolist(),
             "y": [top - 3.2 * reach] * count,
             "text": list(zone.strand_names),
+            "throw": lines["throw"],
+            "share": lines["share"],
             "angle": [np.pi / 2 if self._upright else 0.0] * count,
             "align": ["left" if self._upright else "center"] * count,
             "baseline": ["middle" if self._upright else "bottom"] * count,
@@ -298,17 +299,16 @@ class SectionView(Picture):
             ("area along the fault", "@area"),
         )
         strand = tooltip(
-            ("strand @name", ""),
+            ("strand @text", ""),
             ("throw here", "@throw{0.0} m"),
             ("share here", "@share{0} %"),
         )
         self._make_hoverable(
-            (drawn["sands"], card),
-            (drawn["shales"], card),
             (drawn["windows"], window),
             (drawn["contacts"], window),
-            (drawn["strands"], strand),
-            (drawn["tips"], strand),
+            (drawn["strand names"], strand),
+            (drawn["sands"], card),
+            (drawn["shales"], card),
         )
         self._make_tappable(
             {"windows": drawn["windows"], "contacts": drawn["contacts"], "sands": drawn["sands"]}

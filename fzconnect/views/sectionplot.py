@@ -30,11 +30,11 @@ _COLUMNS: dict[str, tuple[str, ...]] = {
     "frame": ("left", "right", "top", "bottom"),
     "sands": _LAYER,
     "shales": _LAYER,
-    "strands": (*_SEGMENT, "name", "throw", "share"),
-    "tips": (*_SEGMENT, "name", "throw", "share"),
+    "strands": (*_SEGMENT, "throw", "share"),
+    "tips": (*_SEGMENT, "throw", "share"),
     "windows": (*_SEGMENT, "name", "strand", "area"),
     "contacts": (*_SEGMENT, "name", "strand", "area"),
-    "strand names": _TEXT,
+    "strand names": (*_TEXT, "throw", "share"),
     "block names": _TEXT,
     "marks": _SEGMENT,
     "marked sands": ("xs", "ys"),
@@ -51,7 +51,7 @@ class SectionPlot:
     name_axes : (axis, axis)
         Axes that carry the names of sands, beside the footwall and beside the hanging wall.
     renderers : dict of str to renderer
-        By the name of their source: sands, shales, strands, tips, windows, contacts.
+        By the name of their source: sands, shales, windows, contacts, strand names.
     """
 
     figure: figure
@@ -163,7 +163,7 @@ def section_plot(source: dict[str, ColumnDataSource], height: int) -> SectionPlo
     strands = draw(
         plot, Segment, *ends, source=source["strands"], line_color=palette.INK, line_width=2.2
     )
-    tips = draw(
+    draw(
         plot,
         Segment,
         *ends,
@@ -204,6 +204,7 @@ def section_plot(source: dict[str, ColumnDataSource], height: int) -> SectionPlo
         line_color=palette.ACCENT_DEEP,
         line_width=10,
     )
+    names = {}
     for name, colour, weight in (
         ("strand names", palette.INK, "bold"),
         ("block names", palette.QUIET, "normal"),
@@ -219,7 +220,7 @@ def section_plot(source: dict[str, ColumnDataSource], height: int) -> SectionPlo
             line_color=palette.QUIET,
             line_width=0.8,
         )
-        write(
+        names[name] = write(
             plot,
             source[name],
             angle="angle",
@@ -244,8 +245,7 @@ def section_plot(source: dict[str, ColumnDataSource], height: int) -> SectionPlo
     renderers = {
         "sands": layers["sands"],
         "shales": layers["shales"],
-        "strands": strands,
-        "tips": tips,
+        "strand names": names["strand names"],
         "windows": windows,
         "contacts": contacts,
     }

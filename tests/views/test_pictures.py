@@ -95,13 +95,26 @@ def test_section_off_the_fault_is_refused(small: Study) -> None:
 
 
 def test_section_tells_tips_from_strands(quillmere: Study) -> None:
-    view = section_figure(quillmere, 200)  # strands B and C begin further along
-    assert _data(view, "strands")["name"] == ["A", "B"]
-    assert _data(view, "tips")["name"] == ["C"]
-    assert len(_data(view, "contacts")["x0"]) == 12
+    view = section_figure(quillmere, 200)
+    zone = quillmere.zone
+    shares = [np.interp(200, zone.stations, row) for row in zone.shares]
+    tips = sum(share == 0 for share in shares)
+    assert tips > 0
+    assert len(_data(view, "tips")["x0"]) == tips
+    assert len(_data(view, "strands")["x0"]) == zone.strand_count - tips
+    assert len(_data(view, "contacts")["x0"]) == tips * len(zone.bodies)
+    assert _data(view, "strand names")["text"] == ["A", "B", "C"]
+    assert _data(view, "strand names")["share"] == pytest.approx([100 * s for s in shares])
     view.update(quillmere, 2000)
-    assert _data(view, "strands")["name"] == ["A", "B", "C"]
-    assert _data(view, "tips")["name"] == _data(view, "contacts")["x0"] == []
+    assert len(_data(view, "strands")["x0"]) == zone.strand_count
+    assert _data(view, "tips")["x0"] == _data(view, "contacts")["x0"] == []
+
+
+def test_a_tap_changes_no_look(quillmere: Study) -> None:
+    for view in _pictures(quillmere, 1500).values():
+        for renderer in view.figure.renderers:
+            assert renderer.selection_glyph is None
+            assert renderer.nonselection_glyph is None
 
 
 def test_faces_draw_every_strand_and_the_single_plane(small: Study) -> None:

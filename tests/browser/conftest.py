@@ -11,7 +11,9 @@ import pytest
 from .lab import Lab, find_browser, launch, missing_browser, start_lab
 
 
-@pytest.fixture(scope="session")
+# Not for the whole session: while the browser is driven, an event loop counts as running in this
+# thread, and tests elsewhere that mean to have none, or their own, would meet it.
+@pytest.fixture(scope="package")
 def lab(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Lab]:
     """A running JupyterLab with a browser before it; notebooks are opened with `lab.open`."""
     executable = find_browser()

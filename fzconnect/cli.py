@@ -138,6 +138,7 @@ def write_study(
     overwrite: bool = False,
     per_pair: int = 3,
     show: Callable[[str], None] | None = None,
+    progress: bool = True,
 ) -> Study:
     """Study a scenario, write every result file and the report to a folder, return the study.
 
@@ -154,6 +155,8 @@ def write_study(
         Pathways to list for each connected pair.
     show : callable, optional
         Called with the table of answers, as text, before the files are made.
+    progress : bool
+        Whether work that takes over a second shows how far it is, on the error stream.
 
     Raises
     ------
@@ -165,18 +168,18 @@ def write_study(
     from fzconnect.views import report_html
 
     check_folder(out, overwrite=overwrite)
-    with _Progress("windows and network") as progress:
+    with _Progress("windows and network", is_shown=progress) as step:
         result = study(scenario)
-        progress(1, 1)
+        step(1, 1)
     if show:
         show(answer_text(result))
-    with _Progress("pathways") as progress:
-        ranked = result.ranked_pathways(per_pair=per_pair, progress=progress)
-    with _Progress("files and report") as progress:
+    with _Progress("pathways", is_shown=progress) as step:
+        ranked = result.ranked_pathways(per_pair=per_pair, progress=step)
+    with _Progress("files and report", is_shown=progress) as step:
         files = study_files(result, ranked, inputs=inputs)
-        progress(1, 2)
+        step(1, 2)
         files["report.html"] = report_html(result, ranked, inputs=inputs)
-        progress(2, 2)
+        step(2, 2)
     write_folder(out, files, overwrite=overwrite)
     return result
 
@@ -242,10 +245,12 @@ def _changes(study: Study, change: str, label: str) -> str:
 class _Progress:
     """A progress bar on the error stream that shows itself only after a second."""
 
-    def __init__(self, what: str) -> None:
+    def __init__(self, what: str, *, is_shown: bool) -> None:
         from tqdm import tqdm
 
-        self._bar = tqdm(total=1, desc=what, delay=1.0, leave=False, file=sys.stderr)
+        self._bar = tqdm(
+            total=1, desc=what, delay=1.0, leave=False, file=sys.stderr, disable=not is_shown
+        )
 
     def __enter__(self) -> _Progress:
         return self

@@ -124,7 +124,10 @@ def _grown(rows, used):  # type: ignore[no-untyped-def]
     if used < rows.shape[0]:
         return rows
     larger = np.empty((2 * rows.shape[0], rows.shape[1]))
-    larger[:used] = rows[:used]
+    # element by element, because assigning slices takes numba five seconds to compile
+    for i in range(used):
+        for j in range(rows.shape[1]):
+            larger[i, j] = rows[i, j]
     return larger
 
 

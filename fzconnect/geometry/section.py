@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -42,6 +42,14 @@ class Section:
     reference_depth: float
     strand_positions: Array
     slope: float
+
+    def upright(self, lens_width: float) -> Section:
+        """Return the section with strands upright and every lens as wide as given, m.
+
+        What touches what is the same; only distances across the fault lose their meaning.
+        """
+        positions = lens_width * np.arange(len(self.strand_positions), dtype=float)
+        return replace(self, strand_positions=positions - positions.mean(), slope=0.0)
 
     def strand_x(self, strand: int, depth: Array | float) -> Array:
         """Return the horizontal position, m, of strand 0..N-1 at given depths, m."""
@@ -84,12 +92,11 @@ def cut(zone: FaultZone, distance: float) -> Section:
             f"a section at {distance:g} m is off the fault, which runs from {first:g} to {last:g} m"
         )
         raise NetworkError(msg)
-    boundaries = np.array(
-        [
-            [np.interp(distance, zone.stations, row) for row in zone.block_boundaries(block)]
-            for block in range(zone.strand_count + 1)
-        ]
-    )
+    # the two stations around the distance, and how far it is between them
+    left = int(np.clip(np.searchsorted(zone.stations, distance) - 1, 0, len(zone.stations) - 2))
+    part = (distance - zone.stations[left]) / (zone.stations[left + 1] - zone.stations[left])
+    blocks = np.stack([zone.block_boundaries(block) for block in range(zone.strand_count + 1)])
+    boundaries = blocks[:, :, left] * (1.0 - part) + blocks[:, :, left + 1] * part
     positions = np.concatenate([[0.0], np.cumsum(zone.lens_width)])
     return Section(
         distance=float(distance),

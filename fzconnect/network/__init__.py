@@ -6,7 +6,7 @@ from fzconnect.network.cut import Cut
 from fzconnect.network.export import export_graph, study_files
 from fzconnect.network.graph import FaultNetwork
 from fzconnect.network.pathway import Pathway
-from fzconnect.network.study import Answer, Pair, RankedPathway, Study, study
+from fzconnect.network.result import Answer, Pair, RankedPathway, Study, study
 
 __all__ = [
     "Answer",

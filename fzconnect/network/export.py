@@ -16,7 +16,6 @@ from typing import TYPE_CHECKING, Any
 
 import networkx as nx
 
-from fzconnect import __version__
 from fzconnect.errors import OutputError
 from fzconnect.scenario.store import write_file
 
@@ -24,7 +23,7 @@ if TYPE_CHECKING:
     import pandas as pd
 
     from fzconnect.network.graph import FaultNetwork
-    from fzconnect.network.study import RankedPathway, Study
+    from fzconnect.network.result import RankedPathway, Study
 
 __all__ = [
     "CAUTION",
@@ -180,6 +179,8 @@ def export_graph(network: FaultNetwork, path: str | os.PathLike[str]) -> Path:
 
 
 def _versions() -> dict[str, str]:
+    from fzconnect import __version__  # here: the package names lead back to this room
+
     libraries = {name: version(name) for name in ("networkx", "numba", "numpy")}
     return {"fzconnect": __version__, "python": platform.python_version(), **libraries}
 

@@ -88,9 +88,8 @@ def _plots(study: Study) -> tuple[dict[str, figure], list[float]]:
         f"section {number}": section_figure(study, at, height=680 if number == 0 else 500).figure
         for number, at in enumerate(distances)
     }
-    wide = _wide_stretch(zone)
-    if wide > 1:
-        plots["stretched"] = section_figure(study, distances[0], height=600, stretch=wide).figure
+    if zone.strand_count > 1:
+        plots["upright"] = section_figure(study, distances[0], height=640, is_upright=True).figure
     plots["faces"] = faces_figure(study, distances[0], height=560).figure
     plots["graph"] = pathway_graph_figure(study, height=600).figure
     plots["pairs"] = pair_matrix_figure(study, height=170 + min(640, 30 * count)).figure
@@ -98,14 +97,6 @@ def _plots(study: Study) -> tuple[dict[str, figure], list[float]]:
         heading: Any = plots[name].title
         heading.visible = False
     return plots, distances
-
-
-def _wide_stretch(zone: FaultZone) -> int:
-    """Return how many times a section as wide as the page can be stretched across the fault."""
-    span = float(np.ptp(zone.faces))
-    lean = span / np.tan(np.radians(zone.dip))
-    across = float(zone.lens_width.sum()) + lean
-    return int(min(10, np.floor(1.5 * span / across))) if zone.strand_count > 1 else 1
 
 
 def _description(zone: FaultZone) -> str:
@@ -173,15 +164,10 @@ def _pictures(study: Study, place: dict[str, str], distances: Sequence[float]) -
     where = listed([f"{number_text(at)} m" for at in distances], 3)
     more = [place[f"section {number}"] for number in range(1, len(distances))]
     again = f'<div class="plots">{"".join(more)}</div>' if more else ""
-    stretched = place.get("stretched", "")
-    if stretched:
-        stretched = (
-            paragraph(
-                "The same section stretched across the fault, so that the lenses can be read; "
-                "strands look flatter than they are."
-            )
-            + stretched
-        )
+    upright = place.get("upright", "")
+    if upright:
+        words = "The same section, strands upright and lenses widened, to see what touches what."
+        upright = paragraph(words) + upright
     along = f"at {where} along the fault" if more else "anywhere along the fault: it is the same"
     return [
         f"<h2>Section across the zone</h2>{place['section 0']}",
@@ -191,7 +177,7 @@ def _pictures(study: Study, place: dict[str, str], distances: Sequence[float]) -
             "unfaulted contact, where the strand has no throw. What stands above or below the "
             "layers is outside the column and unknown."
         ),
-        stretched,
+        upright,
         again,
         f"<h2>Strand faces</h2>{place['faces']}",
         paragraph(

@@ -37,6 +37,8 @@ _TOO_WIDE = 0.8
 _BESIDE = 0.22
 """Part of the depth range shown of the footwall and of the hanging wall."""
 _TOO_SMALL = 1e-6
+_UPRIGHT_LENS, _UPRIGHT_ZONE = 0.22, 0.9
+"""Parts of the depth range that an upright lens, and all of them together, take at most."""
 _AXES = 132  # px that title, key and axis take from the figure's height
 
 
@@ -48,12 +50,15 @@ class SectionView(Picture):
     figure : bokeh.plotting.figure
     stretch : int
         How many times distances across the fault are stretched; 1 is equal scale.
+    is_upright : bool
+        Whether strands are drawn upright and lenses equally wide, to see what touches what, and
+        not to scale. Change it with `stand`.
     """
 
-    def __init__(self, study: Study, distance: float, height: int, stretch: int | None) -> None:
+    def __init__(self, study: Study, distance: float, height: int, is_upright: bool) -> None:
         super().__init__()
         self.stretch = 0
-        self._wanted_stretch = stretch
+        self.is_upright = is_upright
         self._height = height
         self._zone: FaultZone | None = None
         self._sources = section_sources()
@@ -71,17 +76,26 @@ class SectionView(Picture):
             If the distance is not on the fault.
         """
         zone = study.zone
-        section = zone.at(distance)
-        self._study, self._section = study, section
         if zone is not self._zone:
             self._zone = zone
             self._frame(zone)
+        section = zone.at(distance)
+        if self.is_upright:
+            section = section.upright(self._lens)
+        self._study, self._section = study, section
         set_title(self.figure, f"Section at {number_text(distance)} m along the fault")
         self._layers(zone, section)
         self._strands(zone, section)
         self._windows(study, section)
         self._name_sands(zone, section)
         self._draw_mark(self._shown)
+
+    def stand(self, is_upright: bool) -> None:
+        """Draw the strands upright, or to scale with their dip."""
+        if is_upright != self.is_upright:
+            self.is_upright = is_upright
+            self._zone = None
+            self.update(self._study, self._section.distance)
 
     def picked(self, source: str, index: int) -> Selection | None:
         """Return what a tap on a window, a contact or a sand means."""
@@ -97,24 +111,25 @@ class SectionView(Picture):
         depths = np.concatenate([zone.faces[0, 0], zone.faces[-1, 1]])
         top, base = float(zone.faces.min()), float(zone.faces.max())
         span = base - top
-        slope = 1.0 / np.tan(np.radians(zone.dip)) if zone.dip < 90.0 else 0.0
-        column = float((depths.max(axis=0) - depths.min(axis=0)).max())
-        across = float(zone.lens_width.sum()) + slope * column
-        stretch = self._wanted_stretch or _stretch(across / span)
-        if stretch != self.stretch:
-            self.stretch = stretch
-            self.figure.aspect_scale = float(stretch)
-            scale = "equal scale" if stretch == 1 else f"stretched {stretch} times"
-            self.figure.xaxis[0].axis_label = f"Across the fault, m ({scale})"
+        lenses = zone.strand_count - 1
+        if self.is_upright:
+            self._lens = span * min(_UPRIGHT_LENS, _UPRIGHT_ZONE / max(1, lenses))
+            slope, zone_width, stretch = 0.0, lenses * self._lens, 1
+        else:
+            slope = 1.0 / np.tan(np.radians(zone.dip)) if zone.dip < 90.0 else 0.0
+            zone_width = float(zone.lens_width.sum())
+            column = float((depths.max(axis=0) - depths.min(axis=0)).max())
+            stretch = _stretch((zone_width + slope * column) / span)
+        self._scale(stretch)
         self._span = (top, base)
         self._room = 4.0 * span / stretch  # rock drawn beside the zone, past any frame
         beside = _BESIDE * span / stretch
         pixel = span / max(1, self._height - _AXES)  # metres that a pixel stands for, about
         self._pixel = pixel
-        half = 0.5 * (float(zone.lens_width.sum()) + slope * span)
+        half = 0.5 * (zone_width + slope * span)
         names = max(len(name) for name in zone.strand_names)
-        self._upright = zone.strand_count > 1 and names > 3
-        above = (26 + 9 * names if self._upright else 38) * pixel
+        self._names_upright = zone.strand_count > 1 and names > 3
+        above = (26 + 9 * names if self._names_upright else 38) * pixel
         below = (70 if zone.strand_count > 1 else 8) * pixel
         self._sources["frame"].data = {
             "left": [-half - beside],
@@ -122,6 +137,19 @@ class SectionView(Picture):
             "top": [top - above],
             "bottom": [base + below],
         }
+
+    def _scale(self, stretch: int) -> None:
+        """Set how distances across are drawn, and say it on the axis."""
+        axis = self.figure.xaxis[0]
+        self.stretch = stretch
+        self.figure.aspect_scale = float(stretch)
+        axis.major_label_text_alpha = 0.0 if self.is_upright else 1.0
+        axis.major_tick_line_alpha = axis.major_label_text_alpha
+        if self.is_upright:
+            axis.axis_label = "Across the fault: strands upright, lenses widened, not to scale"
+        else:
+            scale = "equal scale" if stretch == 1 else f"stretched {stretch} times"
+            axis.axis_label = f"Across the fault, m ({scale})"
 
     def _layers(self, zone: FaultZone, section: Section) -> None:
         """Replace the layers of every block: corners, names and what the hover card tells."""
@@ -181,16 +209,16 @@ class SectionView(Picture):
         # names stand apart where strands do not; a thin line leads from each to its own
         pixel_x = self._pixel / self.stretch
         start = x_top - lean
-        apart = 15 if self._upright else 8 * max(map(len, zone.strand_names)) + 6
+        apart = 15 if self._names_upright else 8 * max(map(len, zone.strand_names)) + 6
         self._sources["strand names"].data = {
             "x": spread(start, apart * pixel_x).tolist(),
             "y": [top - 3.2 * reach] * count,
             "text": list(zone.strand_names),
             "throw": lines["throw"],
             "share": lines["share"],
-            "angle": [np.pi / 2 if self._upright else 0.0] * count,
-            "align": ["left" if self._upright else "center"] * count,
-            "baseline": ["middle" if self._upright else "bottom"] * count,
+            "angle": [np.pi / 2 if self._names_upright else 0.0] * count,
+            "align": ["left" if self._names_upright else "center"] * count,
+            "baseline": ["middle" if self._names_upright else "bottom"] * count,
             "x0": start.tolist(),
             "y0": [top - reach] * count,
             "y1": [top - 2.9 * reach] * count,
@@ -336,7 +364,7 @@ def _stretch(part: float) -> int:
 
 
 def section_figure(
-    study: Study, distance: float, *, height: int = 540, stretch: int | None = None
+    study: Study, distance: float, *, height: int = 540, is_upright: bool = False
 ) -> SectionView:
     """Return the section across a study's zone at a distance along the fault.
 
@@ -347,9 +375,10 @@ def section_figure(
         m along the fault.
     height : int, default 540
         Pixels.
-    stretch : int, optional
-        How many times distances across the fault are stretched. Default: equal scale, or, for a
-        zone too narrow to be seen, the least stretching that makes it visible; the axis says so.
+    is_upright : bool, default False
+        Draw strands upright and lenses equally wide, to see what touches what. Otherwise equal
+        scale, or, for a zone too narrow to be seen, the least stretching across that makes it
+        visible. The axis says which.
 
     Returns
     -------
@@ -362,4 +391,4 @@ def section_figure(
     NetworkError
         If the distance is not on the fault.
     """
-    return SectionView(study, distance, height, stretch)
+    return SectionView(study, distance, height, is_upright)

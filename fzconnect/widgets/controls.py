@@ -30,6 +30,7 @@ MOST_STRANDS = 8
 """Strands that the throw-split bar has room for."""
 
 _NO_PAIR = "none"
+_ROUNDING = 1e-9
 _FULL = Layout(width="auto")
 _STYLE = {"description_width": "7.5em"}
 
@@ -89,6 +90,12 @@ class Controls:
             readout_format=".0f",
             **_slider(),
         )
+        self.drawn = Dropdown(
+            options=[("strands upright, lenses wide", True), ("to scale", False)],
+            description="Drawn",
+            style=_STYLE,
+            layout=_FULL,
+        )
         self.own_split = Button(
             description="Scenario's own split",
             tooltip="Forget the shares set by hand",
@@ -109,14 +116,21 @@ class Controls:
             [
                 _group("Fault zone", self.count, self.factor),
                 _group("Throw split, %", bar.boxes, self.own_split),
-                _group("Section", self.distance),
+                _group("Section", self.distance, self.drawn),
                 _group("Sand pair and pathways", self.upper, self.lower, self.pathway, self.clear),
                 _group("Take along", self.folder, self.export, is_open=False),
             ],
             layout=Layout(flex="0 1 300px", min_width="260px"),
         )
         self._handles: list[tuple[Widget, Callable[..., None]]] = []
-        for control in (self.count, self.factor, self.distance, self.upper, self.lower):
+        for control in (
+            self.count,
+            self.factor,
+            self.distance,
+            self.drawn,
+            self.upper,
+            self.lower,
+        ):
             control.observe(self._on_control, names=["value"])
             self._handles.append((control, self._on_control))
         self.own_split.on_click(self._on_own_split)
@@ -148,6 +162,7 @@ class Controls:
             (self.count, params.count),
             (self.factor, params.throw_factor),
             (self.distance, params.distance),
+            (self.drawn, params.is_upright),
             (self.upper, params.hanging_wall_sand or _NO_PAIR),
             (self.lower, params.footwall_sand or _NO_PAIR),
         )
@@ -156,7 +171,7 @@ class Controls:
             for control, value in wanted:
                 if control.value != value:
                     control.value = value
-            if (tuple(self._bar.names), self._bar.shares) != (strands.names, shares):
+            if not _are_same(self._bar, strands.names, shares):
                 self._bar.set(strands.names, shares, tips)
             self.own_split.disabled = params.split is None
             self.params = params
@@ -194,8 +209,9 @@ class Controls:
         params = replace(
             self.params,
             count=self.count.value,
-            throw_factor=round(self.factor.value, 10),
+            throw_factor=self.factor.value,
             distance=self.distance.value,
+            is_upright=self.drawn.value,
             hanging_wall_sand=_sand(self.upper),
             footwall_sand=_sand(self.lower),
         )
@@ -217,6 +233,13 @@ class Controls:
         self.params = params
         for listener in tuple(self._listeners):
             listener(params, final)
+
+
+def _are_same(bar: SplitBar, names: Sequence[str], shares: Sequence[float]) -> bool:
+    """Tell whether the bar shows these shares already; to set it anew would end a drag."""
+    return tuple(bar.names) == tuple(names) and all(
+        abs(mine - its) < _ROUNDING for mine, its in zip(bar.shares, shares, strict=True)
+    )
 
 
 def _sand(menu: Dropdown) -> str | None:

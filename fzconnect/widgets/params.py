@@ -33,6 +33,8 @@ class Params:
         count is not the scenario's).
     split_distance : float
         Distance, m, at which `split` was set; elsewhere the shares keep their proportions.
+    is_upright : bool
+        Whether the section is drawn with strands upright, and not to scale.
     hanging_wall_sand, footwall_sand : str, optional
         Sands chosen; together they are a pair.
     """
@@ -42,6 +44,7 @@ class Params:
     throw_factor: float = 1.0
     split: tuple[float, ...] | None = None
     split_distance: float = 0.0
+    is_upright: bool = True
     hanging_wall_sand: str | None = None
     footwall_sand: str | None = None
 

@@ -40,6 +40,9 @@ _STYLE = f"""<style>{STRIP_STYLE}
   padding: 4px 10px;}}
 </style>"""
 
+_NARROWEST = 440
+"""Pixels below which section and graph no longer stand side by side."""
+
 _PATHWAYS = 6
 """Pathways offered for a chosen pair."""
 
@@ -78,7 +81,7 @@ class Workbench:
         names = scenario.strands.names
         self.bar = SplitBar(names, scenario.strands.split_at(params.distance), most=_most(scenario))
         self.controls = Controls(scenario, self.study.network.sands, self.bar, params)
-        self.section = section_figure(self.study, params.distance, height=520)
+        self.section = section_figure(self.study, params.distance, height=520, is_upright=True)
         self.faces = faces_figure(self.study, params.distance)
         self.graph = pathway_graph_figure(self.study)
         self.matrix = pair_matrix_figure(self.study)
@@ -162,11 +165,10 @@ class Workbench:
 
     def _follow(self, params: Params) -> None:
         """Follow the hand: study what the controls ask for and show it."""
-        if params.asks_the_same(self._shown) and params.distance == self._shown.distance:
-            self._shown = params
+        is_pair_new = params.pair != self._shown.pair
+        self._draw(params)
+        if is_pair_new:
             self._choose_pair(params.pair)
-        else:
-            self._draw(params)
 
     def _draw(self, params: Params) -> None:
         """Study and show `params`; on an error the last good study stays on the screen."""
@@ -175,15 +177,22 @@ class Workbench:
         with self.pane.batch():
             self.controls.show(params)
             self.study, self._shown = fresh, params
+            self.section.stand(params.is_upright)
             self.section.update(fresh, params.distance)
             self.faces.update(fresh, params.distance)
             if is_new:
                 self.graph.update(fresh)
                 self.matrix.update(fresh)
-                self._selection = renewed(fresh, self._selection)
-            for picture in self._pictures:
-                picture.mark(self._selection)
+                self._renew_selection()
         self._tell()
+
+    def _renew_selection(self) -> None:
+        """Keep what is marked as far as the changed study still has it."""
+        selection = renewed(self.study, self._selection)
+        if selection != self._selection:
+            self._selection = selection
+            for picture in self._pictures:
+                picture.mark(selection)
 
     def _settle(self, params: Params) -> None:
         """When the hand rests: list the pathways of the chosen pair anew."""
@@ -219,7 +228,7 @@ class Workbench:
             msg = "the folder has no name"
             raise FzconnectError(msg)
         self._say(f"writing to {folder} ...")
-        write_study(self.scenario, folder)
+        write_study(self.scenario, folder, progress=False)
         self._say(f"written to {folder}: open report.html there")
 
     # ------------------------------------------------------------------ words
@@ -261,10 +270,14 @@ class Workbench:
 
     def _arranged(self) -> Any:
         """Return the layout of all figures: one bokeh document."""
+        # side by side where there is room, below each other where there is not
+        for figure in (self.section.figure, self.graph.figure):
+            figure.min_width = _NARROWEST
         pair = row(
             self.section.figure,
             self.graph.figure,
             sizing_mode="stretch_width",
+            styles={"flex-wrap": "wrap"},
         )
         return column(
             self.bar.figure,

@@ -7,7 +7,7 @@ from fzconnect.errors import NetworkError
 from fzconnect.geometry import FaultZone
 from fzconnect.network import FaultNetwork
 from fzconnect.network.cut import whole_capacities
-from fzconnect.network.study import Answer
+from fzconnect.network.result import Answer
 from tests.network.hand import F2, H1, H2, L1, L2, scenario
 
 

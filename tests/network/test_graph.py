@@ -5,7 +5,7 @@ import pytest
 
 from fzconnect.errors import NetworkError
 from fzconnect.network import FaultNetwork
-from fzconnect.network.study import Answer
+from fzconnect.network.result import Answer
 from tests.network.hand import AREAS, F1, F2, H1, H2, L1, L2, scenario
 from tests.zones import build
 

@@ -11,7 +11,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from fzconnect.geometry import FaultZone
-from fzconnect.network.study import Answer
+from fzconnect.network.result import Answer
 from tests.zones import build, zones
 
 

@@ -14,7 +14,7 @@ from fzconnect.network.bottleneck import WidestTree
 from fzconnect.network.cut import minimum_cut
 from fzconnect.network.export import graphml_bytes, node_link_json
 from fzconnect.network.graph import FaultNetwork
-from fzconnect.network.study import Answer
+from fzconnect.network.result import Answer
 from tests.zones import random_zone
 
 SEEDS = range(25)

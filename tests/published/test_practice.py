@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from fzconnect.geometry import FaultZone, find_windows
-from fzconnect.network.study import Answer
+from fzconnect.network.result import Answer
 from tests.zones import build
 
 

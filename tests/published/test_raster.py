@@ -13,7 +13,7 @@ import pytest
 from scipy import ndimage
 
 from fzconnect.geometry import FaultZone
-from fzconnect.network.study import Answer
+from fzconnect.network.result import Answer
 from tests.zones import build
 
 _WIDTH = 2  # pixels a block

@@ -85,7 +85,26 @@ def test_section_says_how_it_is_stretched(small: Study, quillmere: Study) -> Non
     assert narrow.figure.aspect_scale == 10
     assert narrow.figure.xaxis[0].axis_label == "Across the fault, m (stretched 10 times)"
     assert section_figure(quillmere, 1000).figure.xaxis[0].axis_label.endswith("(equal scale)")
-    assert section_figure(quillmere, 1000, stretch=2).stretch == 2
+
+
+def test_upright_section_keeps_depths_and_says_it_is_not_to_scale(quillmere: Study) -> None:
+    view = section_figure(quillmere, 1550)
+    to_scale = {name: dict(_data(view, name)) for name in ("windows", "contacts")}
+    view.stand(True)
+    for name, drawn in to_scale.items():
+        upright = _data(view, name)
+        for column in ("y0", "y1", "name", "strand"):
+            assert list(upright[column]) == list(drawn[column])
+        assert list(upright["x0"]) == list(upright["x1"])
+    # two lenses, each 22 % of the depth range wide, around the middle
+    zone = quillmere.zone
+    lens = 0.22 * float(zone.faces.max() - zone.faces.min())
+    places = sorted(set(np.round(_data(view, "windows")["x0"], 6)))
+    assert places == pytest.approx([-lens, 0.0, lens])
+    assert "not to scale" in view.figure.xaxis[0].axis_label
+    view.stand(False)
+    assert "equal scale" in view.figure.xaxis[0].axis_label
+    assert list(_data(view, "windows")["x0"]) == list(to_scale["windows"]["x0"])
 
 
 def test_section_off_the_fault_is_refused(small: Study) -> None:

@@ -13,7 +13,7 @@ if TYPE_CHECKING:
     from fzconnect.geometry import FaultZone, Windows, find_windows
     from fzconnect.network import FaultNetwork, Study, export_graph, study
     from fzconnect.scenario import Scenario, demo, load, save
-    from fzconnect.widgets import Workbench, workbench
+    from fzconnect.widgets.workbench import Workbench, workbench
 
 __version__ = "0.1.0"
 
@@ -29,8 +29,8 @@ _HOMES = {
     "demo": "fzconnect.scenario",
     "load": "fzconnect.scenario",
     "save": "fzconnect.scenario",
-    "Workbench": "fzconnect.widgets",
-    "workbench": "fzconnect.widgets",
+    "Workbench": "fzconnect.widgets.workbench",
+    "workbench": "fzconnect.widgets.workbench",
     "write_study": "fzconnect.cli",
 }
 

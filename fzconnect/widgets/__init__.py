@@ -9,17 +9,16 @@ if TYPE_CHECKING:
     from fzconnect.widgets.pane import FigurePane
     from fzconnect.widgets.scheduler import Scheduler
     from fzconnect.widgets.splitbar import SplitBar
-    from fzconnect.widgets.workbench import Workbench, workbench
+    from fzconnect.widgets.workbench import Workbench
 
 _HOMES = {
     "FigurePane": "fzconnect.widgets.pane",
     "Scheduler": "fzconnect.widgets.scheduler",
     "SplitBar": "fzconnect.widgets.splitbar",
     "Workbench": "fzconnect.widgets.workbench",
-    "workbench": "fzconnect.widgets.workbench",
 }
 
-__all__ = ["FigurePane", "Scheduler", "SplitBar", "Workbench", "workbench"]
+__all__ = ["FigurePane", "Scheduler", "SplitBar", "Workbench"]
 
 
 def __getattr__(name: str) -> Any:

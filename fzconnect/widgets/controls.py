@@ -30,8 +30,10 @@ MOST_STRANDS = 8
 """Strands that the throw-split bar has room for."""
 
 _NO_PAIR = "none"
+_NO_PATHWAY = ("none", -1)
 _ROUNDING = 1e-9
-_FULL = Layout(width="auto")
+# plain words and not a `Layout`: that is a widget, and closing one bench would close it for all
+_FULL = {"width": "auto"}
 _STYLE = {"description_width": "7.5em"}
 
 
@@ -104,7 +106,7 @@ class Controls:
         menu = {"style": _STYLE, "layout": _FULL}
         self.upper = Dropdown(options=[_NO_PAIR, *sands], description="Hanging wall", **menu)
         self.lower = Dropdown(options=[_NO_PAIR, *sands], description="Footwall", **menu)
-        self.pathway = Dropdown(options=[("choose a pair", -1)], description="Pathway", **menu)
+        self.pathway = Dropdown(options=[_NO_PATHWAY], disabled=True, description="Pathway", **menu)
         self.clear = Button(description="Mark nothing", layout=_FULL)
         self.folder = Text(value="study", description="Folder", continuous_update=False, **menu)
         self.export = Button(
@@ -168,11 +170,11 @@ class Controls:
         )
         self._writing = True
         try:
+            if not _are_same(self._bar, strands.names, shares):
+                self._bar.set(strands.names, shares, tips)
             for control, value in wanted:
                 if control.value != value:
                     control.value = value
-            if not _are_same(self._bar, strands.names, shares):
-                self._bar.set(strands.names, shares, tips)
             self.own_split.disabled = params.split is None
             self.params = params
         finally:
@@ -184,7 +186,7 @@ class Controls:
         try:
             self.pathway.disabled = not labels
             self.pathway.options = [(label, rank) for rank, label in enumerate(labels)] or [
-                ("none", -1)
+                _NO_PATHWAY
             ]
         finally:
             self._writing = False

@@ -13,7 +13,8 @@ rest of the package never meets it:
   layout is serialised again just before it is shown, and whenever the browser asks for the whole
   state, as it does after a page is loaded anew.
 - Every single change of a bokeh property costs three messages, and two more for every array. A
-  patch may hold many changes, so those made inside `FigurePane.batch` go as one.
+  patch may hold many changes, so those made inside `FigurePane.batch` go as one, with the arrays
+  inside its text: three messages for a whole step of a slider.
 - Closing the bridge twice raises a KeyError; a pane may be closed as often as one likes.
 """
 
@@ -119,7 +120,8 @@ def _is_plain(values: list[Any]) -> bool:
 def _patch(events: list[DocumentPatchedEvent]) -> patch_doc:
     """Return the message that `Protocol().create("PATCH-DOC", events)` makes, sooner."""
     models = events[0].document.models
-    serializer = _Serializer(references=models.synced_references)
+    # arrays inside the text: by themselves each would be two messages more
+    serializer = _Serializer(references=models.synced_references, deferred=False)
     content = PatchJson(events=serializer.encode(events))
     models.flush_synced(lambda model: not serializer.has_ref(model))
     message = patch_doc(patch_doc.create_header(), {}, content)

@@ -96,7 +96,8 @@ class Params:
 
     def to_dict(self) -> dict[str, Any]:
         """Return the state as plain numbers and lists for JSON, with a version."""
-        return {"version": _VERSION, **asdict(self)}
+        split = None if self.split is None else list(self.split)
+        return {"version": _VERSION, **asdict(self), "split": split}
 
     @classmethod
     def from_dict(cls, state: Mapping[str, Any]) -> Self:

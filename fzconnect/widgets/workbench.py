@@ -174,6 +174,10 @@ class Workbench:
         """Study and show `params`; on an error the last good study stays on the screen."""
         is_new = not params.asks_the_same(self._shown)
         fresh = study(params.apply(self._base), like=self.study) if is_new else self.study
+        # whatever can be refused is asked before anything is changed
+        fresh.zone.at(params.distance)
+        if params.pair is not None:
+            fresh.network.ends(*params.pair)
         with self.pane.batch():
             self.controls.show(params)
             self.study, self._shown = fresh, params

@@ -6,9 +6,11 @@ import json
 from typing import Any
 
 import pytest
+from bokeh.document import Document
 from bokeh.layouts import column
 from bokeh.models import ColumnDataSource, Div
 from bokeh.plotting import figure
+from bokeh.protocol import Protocol
 from ipywidgets import HBox, Widget
 
 from fzconnect.widgets import pane as pane_module
@@ -211,3 +213,32 @@ def test_closing_all_widgets_closes_a_pane() -> None:
     Widget.close_all()
     assert pane.closed
     pane.close()
+
+
+@pytest.mark.parametrize(
+    "column",
+    [
+        [1.0, 2.5],
+        [1.0, float("nan")],
+        [float("inf"), -float("inf")],
+        ["a", "b"],
+        [[1.0, 2.0], [3.0, 4.0]],
+        [[1.0, float("nan")], [3.0, 4.0]],
+        [[[1.0], [2.0]], [[3.0]]],
+        [1, 2.0],
+        [True, None],
+        [(1.0, 2.0), [3.0]],
+        [[], [1.0]],
+        [],
+    ],
+)
+def test_the_quick_patch_says_what_bokeh_s_own_would(column: list[Any]) -> None:
+    source = ColumnDataSource({"x": [0.0]})
+    document = Document()
+    document.add_root(source)
+    events: list[Any] = []
+    document.on_change(events.append)
+    source.data = {"x": column}
+    quick = pane_module._patch(events)
+    own = Protocol().create("PATCH-DOC", events)
+    assert json.loads(quick.content_json) == json.loads(own.content_json)

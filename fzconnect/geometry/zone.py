@@ -198,11 +198,12 @@ class FaultZone:
             (self.footwall, other.footwall),
             (self.hanging_wall, other.hanging_wall),
             (self.vsh, other.vsh),
+            (_given(self.permeability), _given(other.permeability)),
         )
         return (
             self.dip == other.dip
             and self.bodies == other.bodies
-            and all(np.array_equal(mine, its) for mine, its in columns)
+            and all(np.array_equal(mine, its, equal_nan=True) for mine, its in columns)
         )
 
     def body_faces(self) -> tuple[Array, Array]:
@@ -296,6 +297,10 @@ def _check_thickness(
             "shares of the strands carry the growth between the two columns too far there"
         )
         raise ScenarioError(msg)
+
+
+def _given(values: Array | None) -> Array:
+    return np.zeros(0) if values is None else values
 
 
 def _optional(rows: list[list[float | None]]) -> Array | None:

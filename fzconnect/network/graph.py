@@ -18,6 +18,8 @@ from fzconnect.network.cut import Cut, minimum_cut, whole_capacities
 from fzconnect.network.pathway import Pathway, pathways
 
 if TYPE_CHECKING:
+    import pandas as pd
+
     from fzconnect.geometry import FaultZone, Windows
 
 __all__ = ["FOOTWALL", "HANGING_WALL", "FaultNetwork", "node_id"]
@@ -210,6 +212,19 @@ class FaultNetwork:
             msg = "a minimum cut needs at least one sand on each side of the fault"
             raise NetworkError(msg)
         return minimum_cut(self.graph, sources, targets)
+
+    def links_table(self) -> pd.DataFrame:
+        """Return the links as a table, one row an edge; lengths in m, areas in m2."""
+        import pandas as pd
+
+        rows = [
+            {"footwall_side": first, "hanging_wall_side": second, **self.graph.edges[first, second]}
+            for first, second in map(self.ordered, self.graph.edges)
+        ]
+        return pd.DataFrame(rows)
+
+    def _repr_html_(self) -> str:
+        return str(self.links_table().to_html(index=False, float_format=lambda v: f"{v:.6g}"))
 
     def ordered(self, edge: tuple[str, str]) -> tuple[str, str]:
         """Return an edge with its footwall-side node first."""

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
+from html import escape
 from itertools import product
 from typing import TYPE_CHECKING, Any, Self
 
@@ -18,6 +19,9 @@ if TYPE_CHECKING:
     from fzconnect.scenario import Scenario
 
 __all__ = ["Answer", "Pair", "RankedPathway", "Study", "study"]
+
+
+_UNITS = {"window_area": ", m2", "widest_bottleneck": ", m2"}
 
 
 @dataclass(frozen=True, slots=True)
@@ -164,6 +168,17 @@ class Study:
             "critical_windows": len(network.critical_windows),
         }
 
+    def answers_table(self) -> pd.DataFrame:
+        """Return the headline numbers, the zone's beside the single plane's; areas in m2."""
+        import pandas as pd
+
+        zone, plane = self.counts("zone"), self.counts("single plane")
+        return pd.DataFrame(
+            {"zone": list(zone.values()), "single_plane": list(plane.values())},
+            index=pd.Index([name.replace("_", " ") + _UNITS.get(name, "") for name in zone]),
+            dtype=object,
+        )
+
     def pairs_table(self) -> pd.DataFrame:
         """Return every pair as a table; areas in m2."""
         import pandas as pd
@@ -181,6 +196,17 @@ class Study:
                 "change": [p.change for p in self.pairs],
             }
         )
+
+    def _repr_html_(self) -> str:
+        changes = [pair.change for pair in self.pairs]
+        table = self.answers_table().to_html(float_format=lambda value: f"{value:,.0f}")
+        words = [
+            f"{changes.count('gained')} pairs gained and {changes.count('lost')} lost against the "
+            "single plane.",
+            *(f"{sentence}." for sentence in self.warnings),
+        ]
+        told = "".join(f"<p>{escape(sentence)}</p>" for sentence in words)
+        return f"<p><b>{escape(self.scenario.name)}</b></p>{table}{told}"
 
     def __repr__(self) -> str:
         return (

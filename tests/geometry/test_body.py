@@ -2,6 +2,7 @@ from __future__ import annotations
 
 import pytest
 
+from fzconnect.errors import ScenarioError
 from fzconnect.geometry import SandBody, sand_bodies
 
 
@@ -21,3 +22,10 @@ def test_a_sand_body_is_a_run_of_sands_named_by_its_ends(
 ) -> None:
     names = [f"L{i + 1}" for i in range(len(sand))]
     assert list(sand_bodies(names, [letter == "S" for letter in sand])) == expected
+
+
+def test_two_sand_bodies_never_share_a_name() -> None:
+    """Nodes of the network are told apart by it: two under one name would be joined."""
+    names, sand = ["S1", "S2", "M", "S1 to S2"], [True, True, False, True]
+    with pytest.raises(ScenarioError, match='two sand bodies would be called "S1 to S2"'):
+        sand_bodies(names, sand)

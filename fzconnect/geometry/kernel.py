@@ -14,6 +14,8 @@ notice a change in a function that is called from another file.
 
 from __future__ import annotations
 
+from typing import Any
+
 import numpy as np
 from numba import njit
 from numpy.typing import NDArray
@@ -45,7 +47,16 @@ _FROM, _TO, _TOP, _BASE, _HEIGHT, _AREA, _FIRST, _END = 5, 6, 7, 8, 9, 10, 11, 1
 _WIDTH = 13
 
 
-@njit(cache=True, nogil=True)
+def _compiled(function: Any) -> Any:
+    """Return a function that numba compiles at its first call and keeps for the next session."""
+    try:
+        return njit(cache=True, nogil=True)(function)
+    except RuntimeError:
+        # Neither the package's folder nor the user's can be written: compile in every session.
+        return njit(nogil=True)(function)
+
+
+@_compiled
 def _crossing(left: float, right: float) -> float:
     """Return where inside 0 to 1 a line from `left` to `right` is zero; -1 if it never is."""
     if (left > 0.0 and right < 0.0) or (left < 0.0 and right > 0.0):
@@ -53,7 +64,7 @@ def _crossing(left: float, right: float) -> float:
     return -1.0
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def _kinks(ta0, ta1, ba0, ba1, tb0, tb1, bb0, bb1, x):  # type: ignore[no-untyped-def]
     """Fill `x` with 0, the places where the tops or the bases cross, and 1; return how many."""
     first = _crossing(ta0 - tb0, ta1 - tb1)
@@ -72,13 +83,13 @@ def _kinks(ta0, ta1, ba0, ba1, tb0, tb1, bb0, bb1, x):  # type: ignore[no-untype
     return count + 1
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def _mix(left: float, right: float, x: float) -> float:
     """Return the value between `left` at x = 0 and `right` at x = 1, both of them exactly."""
     return left * (1.0 - x) + right * x
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def _overlap_points(ta0, ta1, ba0, ba1, tb0, tb1, bb0, bb1, at, x, upper, lower):  # type: ignore[no-untyped-def]
     """Trace the overlap of bodies a and b over one segment.
 
@@ -118,7 +129,7 @@ def _overlap_points(ta0, ta1, ba0, ba1, tb0, tb1, bb0, bb1, at, x, upper, lower)
     return count, area
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def _grown(rows, used):  # type: ignore[no-untyped-def]
     """Return `rows` with room for one row more, copied if it was full."""
     if used < rows.shape[0]:
@@ -131,7 +142,7 @@ def _grown(rows, used):  # type: ignore[no-untyped-def]
     return larger
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def _is_unfaulted(tops, bases, a, b, i):  # type: ignore[no-untyped-def]
     """Tell whether body a meets itself without any offset from station i to i + 1."""
     if a != b:
@@ -144,7 +155,7 @@ def _is_unfaulted(tops, bases, a, b, i):  # type: ignore[no-untyped-def]
     return True
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def _fill_ranges(tops, bases, highest, lowest):  # type: ignore[no-untyped-def]
     """Fill each body's shallowest top and deepest base over the whole fault: (2, A) arrays."""
     for side in range(2):
@@ -157,7 +168,7 @@ def _fill_ranges(tops, bases, highest, lowest):  # type: ignore[no-untyped-def]
             lowest[side, body] = low
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def trace_windows(
     stations: NDArray[np.float64],
     tops: NDArray[np.float64],
@@ -269,7 +280,7 @@ def trace_windows(
     return rows[:used].copy(), vertices[:corners].copy()
 
 
-@njit(cache=True, nogil=True)
+@_compiled
 def facing_area(
     stations: NDArray[np.float64],
     top: NDArray[np.float64],

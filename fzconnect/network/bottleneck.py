@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Collection
 from dataclasses import dataclass
+from functools import cached_property
 from typing import Self
 
 import networkx as nx
@@ -41,12 +42,16 @@ class WidestTree:
                 kept.append((u, v, size))
         return cls(tuple(kept))
 
+    @cached_property
+    def _tree(self) -> nx.Graph[str]:
+        tree: nx.Graph[str] = nx.Graph()
+        tree.add_edges_from((u, v) for u, v, _ in self.edges)
+        return tree
+
     def path(self, source: str, target: str) -> list[str]:
         """Return the nodes of the widest pathway, an empty list if the two are not connected."""
-        tree: nx.Graph[str] = nx.Graph()
-        tree.add_nodes_from((source, target))
-        tree.add_edges_from((u, v) for u, v, _ in self.edges)
-        if not nx.has_path(tree, source, target):
+        tree = self._tree
+        if source not in tree or target not in tree or not nx.has_path(tree, source, target):
             return []
         return list(nx.shortest_path(tree, source, target))
 

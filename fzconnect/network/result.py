@@ -142,10 +142,12 @@ class Study:
 
     def critical_windows(self, pair: Pair) -> tuple[tuple[str, str], ...]:
         """Return the critical windows of a pair: each of them alone, if closed, separates it."""
-        critical = set(self.network.critical_windows)
+        if not pair.connected:
+            return ()
         widest = self.network.widest(pair.hanging_wall_sand, pair.footwall_sand)
         if widest is None:
             return ()
+        critical = set(self.network.critical_windows)
         # a bridge is on every pathway of the pairs that it holds together, so on this one
         edges = (self.network.ordered(edge) for edge in widest.edges)
         return tuple(edge for edge in edges if edge in critical)

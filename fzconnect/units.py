@@ -84,9 +84,7 @@ def convert(text: str, unit: str) -> float:
         wanted = 'a fraction such as 0.35, or "35 %"'
     match = _TEXT.fullmatch(text) if len(text) <= 80 else None
     if match is None or (match["unit"] and not _UNIT.fullmatch(match["unit"])):
-        comma = re.fullmatch(r"\s*([+-]?\d+),(\d+)\s*", text)
-        hint = f"; write {comma[1]}.{comma[2]} with a decimal point" if comma else ""
-        msg = f"found {_quote(text)}, expected {wanted}{hint}"
+        msg = f"found {_quote(text)}, expected {wanted}{_comma_hint(text)}"
         raise UnitError(msg)
     number, name = float(match["number"]), match["unit"]
     if not name:
@@ -129,6 +127,18 @@ def _converted(number: float, name: str, unit: str, text: str, wanted: str) -> f
         raise UnitError(msg) from None
     # A conversion leaves noise in the last digits: "390 ft" is 118.872 m, as people would say.
     return float(f"{number:.13g}")
+
+
+def _comma_hint(text: str) -> str:
+    """Return how to write a number that holds a comma, which may mean either of two things."""
+    comma = re.fullmatch(r"\s*([+-]?\d+),(\d+)\s*", text)
+    if comma is None:
+        return ""
+    whole, rest = comma.groups()
+    # "0,150" can only be a decimal, "1,030" may be a thousand
+    if len(rest) == 3 and len(whole.lstrip("+-")) <= 3 and whole.lstrip("+-0"):
+        return f"; write {whole}{rest} or {whole}.{rest}, whichever is meant"
+    return f"; write {whole}.{rest} with a decimal point"
 
 
 def _quote(text: str) -> str:

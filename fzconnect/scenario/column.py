@@ -12,9 +12,9 @@ from fzconnect.scenario.quantity import (
     Choice,
     Depth,
     Fraction,
-    Length,
     Name,
     Permeability,
+    Span,
     fault,
     show,
 )
@@ -34,7 +34,7 @@ class Layer(Part):
     name : str
         Unique within the column.
     thickness : float
-        m, above 0.
+        m, at least a millimetre.
     vsh : float
         Volume fraction of shale, 0 to 1.
     permeability : float, optional
@@ -46,11 +46,19 @@ class Layer(Part):
     """
 
     name: Name
-    thickness: Length
+    thickness: Span
     vsh: Fraction
     permeability: Permeability | None = None
     porosity: Fraction | None = None
     kind: _Kind | None = None
+
+    @field_validator("name", mode="after")
+    @classmethod
+    def _check_name(cls, name: str) -> str:
+        if " > " in name:
+            msg = f'found {show(name)}, expected a name without the " > " of pathways'
+            raise fault(msg)
+        return name
 
     def is_sand(self, cutoff: float) -> bool:
         """Return whether the layer is sand: by its kind, else by vsh at or below the cutoff."""

@@ -30,6 +30,7 @@ __all__ = [
     "Points",
     "Pressure",
     "Row",
+    "Span",
     "Split",
     "StrandNumber",
     "Temperature",
@@ -276,7 +277,8 @@ _DEPTH = Amount("m")
 _SHARE = Amount("fraction", least=-100, most=100)
 _WEIGHT = Amount("", least=-1e9, most=1e9)
 
-Angle = Annotated[float, BeforeValidator(Amount("degrees", above=0, most=90))]
+# A flatter strand has no depth range to speak of, and its area leaves all sensible limits.
+Angle = Annotated[float, BeforeValidator(Amount("degrees", least=0.1, most=90))]
 Density = Annotated[float, BeforeValidator(Amount("kg/m3", above=0, most=25_000))]
 Depth = Annotated[float, BeforeValidator(_DEPTH)]
 Fraction = Annotated[float, BeforeValidator(Amount("fraction", least=0, most=1))]
@@ -285,6 +287,8 @@ Name = Annotated[str, BeforeValidator(_name)]
 Permeability = Annotated[float, BeforeValidator(Amount("mD", least=0, most=1e9))]
 Points = Annotated[tuple[tuple[float, float], ...], BeforeValidator(_Pairs("throw", _DEPTH, 2))]
 Pressure = Annotated[float, BeforeValidator(Amount("MPa", above=0, most=10_000))]
+# No layer is thinner and no fault shorter than a millimetre: rounding of depths stays far below.
+Span = Annotated[float, BeforeValidator(Amount("m", least=1e-3))]
 Split = Annotated[tuple[float, ...], BeforeValidator(_split)]
 StrandNumber = Annotated[int, BeforeValidator(_whole)]
 Temperature = Annotated[float, BeforeValidator(Amount("degC", above=-273.15, most=2000))]

@@ -88,7 +88,7 @@ class _Reading:
 
     def __init__(self, path: Path) -> None:
         self.path = path
-        self.source: TextFile = read_text(path, "a scenario file (TOML)")
+        self.source: TextFile = read_text(path, "a scenario file (TOML)", inside="scenario.toml")
         self.tables: dict[Place, Table] = {}
         self.named: dict[str, Table] = {}
 
@@ -112,7 +112,9 @@ class _Reading:
             reason = "lists or tables are nested too deeply"
         except ValueError as error:
             # Also covers numbers of more digits than Python converts.
-            reason = str(error).replace("Exceeds the limit", "a number exceeds the limit")
+            reason = str(error)
+            if reason.startswith("Exceeds the limit"):
+                reason = "a number has thousands of digits"
         msg = f"{self.path}: is not valid TOML: {reason}"
         raise ScenarioError(msg) from None
 

@@ -107,7 +107,7 @@ def check_folder(out: str | os.PathLike[str], *, overwrite: bool = False) -> boo
         if not overwrite and _written_before(folder) is None and any(folder.iterdir()):
             msg = (
                 f"{folder}: is not empty and was not written by fzconnect, expected a new or "
-                "empty folder, or leave to overwrite it"
+                "empty folder, or leave to overwrite this one (--overwrite)"
             )
             raise OutputError(msg)
     return True

@@ -169,6 +169,12 @@ def _check_header(
     allowed = [*required, *optional]
     where = f"{path}, row {line}"
     for i, name in enumerate(header):
+        if not name:
+            msg = (
+                f"{where}: column {i + 1} has no name, allowed are {', '.join(allowed)}; "
+                "a comma at the end of each line makes a column too many"
+            )
+            raise ScenarioError(msg)
         if name not in allowed:
             absent = [column for column in allowed if column not in header]
             hint = nearest(name.lower(), absent) or f", allowed are {', '.join(allowed)}"

@@ -25,7 +25,7 @@ class TextFile:
     sha256: str
 
 
-def read_text(path: Path, what: str) -> TextFile:
+def read_text(path: Path, what: str, *, inside: str = "") -> TextFile:
     """Return the content of a UTF-8 text file.
 
     Parameters
@@ -34,6 +34,8 @@ def read_text(path: Path, what: str) -> TextFile:
         As it shall appear in messages.
     what : str
         What the file is, such as "a scenario table".
+    inside : str
+        Name of the file to point at if the path is a folder that holds it.
 
     Raises
     ------
@@ -45,8 +47,7 @@ def read_text(path: Path, what: str) -> TextFile:
         raise ScenarioError(msg)
     with _said(path):
         if path.is_dir():
-            example = path / "scenario.toml"
-            hint = f"; try {example}" if example.is_file() else ""
+            hint = f"; try {path / inside}" if inside and (path / inside).is_file() else ""
             msg = f"{path}: is a folder, expected the path of {what}{hint}"
             raise ScenarioError(msg)
         if not path.exists():

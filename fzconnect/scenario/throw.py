@@ -13,8 +13,8 @@ from fzconnect.scenario.quantity import (
     MOST_POINTS,
     Amount,
     Depth,
-    Length,
     Points,
+    Span,
     check_distances,
     fault,
     show,
@@ -23,6 +23,9 @@ from fzconnect.scenario.quantity import (
 __all__ = ["Cutoff", "Throw"]
 
 _Throw = Annotated[float, BeforeValidator(Amount("m"))]
+
+_LEAST_LENGTH = 1e-3
+"""Shortest fault along strike, m."""
 
 
 class Cutoff(Part):
@@ -57,7 +60,7 @@ class Throw(Part):
     """
 
     total: _Throw | None = None
-    length: Length = 1.0
+    length: Span = 1.0
     profile: Points | None = None
     cutoffs: tuple[Cutoff, ...] | None = None
 
@@ -82,7 +85,15 @@ class Throw(Part):
         if self.total is None and self.length != 1:
             msg = f"found length {self.length:g} with {given[0]}, expected it with total only"
             raise fault(msg)
+        self._check_extent()
         return self
+
+    def _check_extent(self) -> None:
+        extent = self.distances[-1] - self.distances[0]
+        if extent < _LEAST_LENGTH:
+            name = "cutoffs" if self.profile is None else "profile"
+            msg = f"found a fault of {extent:.3g} m, expected at least {_LEAST_LENGTH:g} m"
+            raise fault(msg, name)
 
     @property
     def distances(self) -> tuple[float, ...]:

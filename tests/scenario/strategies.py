@@ -31,7 +31,7 @@ def numbers(low: float, high: float) -> st.SearchStrategy[float]:
 
 names = st.text(
     st.characters(exclude_categories=["Cc", "Cs", "Cn", "Zl", "Zp"]), min_size=1, max_size=12
-).filter(lambda text: text.strip() != "")
+).filter(lambda text: text.strip() != "" and " > " not in text)
 
 lengths = numbers(1e-3, 1e3)
 depths = numbers(-1e4, 1e4)
@@ -82,7 +82,8 @@ def throws(draw: st.DrawFn, column: Column) -> Throw:
     some = numbers(-reach, reach)
     if form == "total":
         return Throw(total=draw(some), length=draw(lengths))
-    distances = sorted(draw(st.lists(depths, min_size=2, max_size=5, unique=True)))
+    several = st.lists(depths, min_size=2, max_size=5, unique=True)
+    distances = sorted(draw(several.filter(lambda some: max(some) - min(some) >= 1e-3)))
     if form == "profile":
         return Throw(profile=tuple((s, draw(some)) for s in distances))
     assert column.top is not None

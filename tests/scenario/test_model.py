@@ -62,7 +62,7 @@ def test_errors_of_models_made_in_python_name_the_model() -> None:
     message = 'Layer: unknown key "vhs", did you mean "vsh"?'
     with pytest.raises(ScenarioError, match=re.escape(message)):
         Layer(name="S", thickness=1, vsh=0, vhs=1)  # type: ignore[call-arg]
-    message = "Scenario.column.layers[2].thickness: found 0, expected a number above 0"
+    message = "Scenario.column.layers[2].thickness: found 0, expected a number from 0.001"
     bad = {"name": "M", "thickness": 0, "vsh": 1}
     layers = [{"name": "S", "thickness": 1, "vsh": 0}, bad]
     with pytest.raises(ScenarioError, match=re.escape(message)):

@@ -250,7 +250,7 @@ def test_toml_nested_beyond_sense(write: Write) -> None:
 
 def test_toml_number_with_too_many_digits(write: Write) -> None:
     path = write({"total = 30": "total = " + "9" * 5000})
-    with pytest.raises(ScenarioError, match="is not valid TOML: a number exceeds the limit"):
+    with pytest.raises(ScenarioError, match="is not valid TOML: a number has thousands of digits"):
         load(path)
 
 
@@ -330,12 +330,17 @@ def test_toml_number_with_too_many_digits(write: Write) -> None:
         (
             "total = 30",
             "total = 30\nlength = 0",
-            "throw.length: found 0, expected a number above 0 and up to 1000000 m",
+            "throw.length: found 0, expected a number from 0.001 to 1000000 m",
         ),
         (
             "total = 30",
             "total = 30\nlength = -5",
-            "throw.length: found -5, expected a number above 0 and up to 1000000 m",
+            "throw.length: found -5, expected a number from 0.001 to 1000000 m",
+        ),
+        (
+            "total = 30",
+            "profile = [[0, 30], [1e-300, 31]]",
+            "throw.profile: found a fault of 1e-300 m, expected at least 0.001 m",
         ),
         ('"Test zone"', "3", "name: found 3, expected a text in quotes"),
         ('"Test zone"', '"  "', "name: found an empty text, expected a name"),
@@ -405,12 +410,12 @@ def test_toml_number_with_too_many_digits(write: Write) -> None:
         (
             "count = 3",
             "count = 3\ndip = 0",
-            "strands.dip: found 0, expected a number above 0 and up to 90 degrees",
+            "strands.dip: found 0, expected a number from 0.1 to 90 degrees",
         ),
         (
             "count = 3",
             "count = 3\ndip = 91",
-            "strands.dip: found 91, expected a number above 0 and up to 90 degrees",
+            "strands.dip: found 91, expected a number from 0.1 to 90 degrees",
         ),
         (
             "count = 3",

@@ -40,8 +40,8 @@ def _refused(path: Path, message: str) -> None:
         (
             "permeability",
             "",
-            'row 1: unknown column "", allowed are layer, thickness, vsh, '
-            "permeability, porosity, kind",
+            "row 1: column 4 has no name, allowed are layer, thickness, vsh, permeability, "
+            "porosity, kind; a comma at the end of each line makes a column too many",
         ),
         ("permeability", "vsh", 'row 1: found the column "vsh" twice, expected it once'),
         (
@@ -72,27 +72,27 @@ def _refused(path: Path, message: str) -> None:
         (
             "M1,10,",
             "M1,nan,",
-            "row 3, column thickness: found nan, expected a number above 0 and up to 1000000 m",
+            "row 3, column thickness: found nan, expected a number from 0.001 to 1000000 m",
         ),
         (
             "M1,10,",
             "M1,inf,",
-            "row 3, column thickness: found inf, expected a number above 0 and up to 1000000 m",
+            "row 3, column thickness: found inf, expected a number from 0.001 to 1000000 m",
         ),
         (
             "M1,10,",
             "M1,1e999,",
-            "row 3, column thickness: found inf, expected a number above 0 and up to 1000000 m",
+            "row 3, column thickness: found inf, expected a number from 0.001 to 1000000 m",
         ),
         (
             "M1,10,",
             "M1,0,",
-            "row 3, column thickness: found 0, expected a number above 0 and up to 1000000 m",
+            "row 3, column thickness: found 0, expected a number from 0.001 to 1000000 m",
         ),
         (
             "M1,10,",
             "M1,-10,",
-            "row 3, column thickness: found -10, expected a number above 0 and up to 1000000 m",
+            "row 3, column thickness: found -10, expected a number from 0.001 to 1000000 m",
         ),
         ("0.7", "1.7", "row 3, column vsh: found 1.7, expected a number from 0 to 1"),
         ("0.7", "-0.1", "row 3, column vsh: found -0.1, expected a number from 0 to 1"),
@@ -108,6 +108,11 @@ def _refused(path: Path, message: str) -> None:
             "layers have one; expected a value for every sand or for no layer",
         ),
         ("S2", "S1", 'row 4, column layer: found "S1" twice, expected each layer once'),
+        (
+            "S2",
+            "S > 2",
+            'row 4, column layer: found "S > 2", expected a name without the " > " of pathways',
+        ),
         (
             "S2",
             "S\x07",
@@ -244,8 +249,7 @@ def test_no_seal_at_all(write: Write) -> None:
         ),
         (
             "layer,thickness\nS1,1\nM1,0\nS2,1\nM2,1\n",
-            "hw.csv, row 3, column thickness: found 0, expected a number above 0 and up to "
-            "1000000 m",
+            "hw.csv, row 3, column thickness: found 0, expected a number from 0.001 to 1000000 m",
         ),
     ],
 )

@@ -69,6 +69,8 @@ def test_every_example_can_be_converted(unit: str, example: str) -> None:
         ("3 kg", "m", 'found "3 kg", whose unit measures something else; expected a number in m'),
         ("3", "m", 'found "3" in quotes and without a unit, expected a number in m, bare or'),
         ("1,5", "m", 'such as "390 ft"; write 1.5 with a decimal point'),
+        ("0,150", "m", "; write 0.150 with a decimal point"),
+        ("1,030", "m", "; write 1030 or 1.030, whichever is meant"),
         ("m 3", "m", 'found "m 3", expected a number in m, bare or with a unit such as "390 ft"'),
         ("3 m**", "m", 'found "3 m**", expected a number in m'),
         ("5 %", "degrees", 'found "5 %", expected a number in degrees'),

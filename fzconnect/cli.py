@@ -8,9 +8,12 @@ from __future__ import annotations
 
 import argparse
 import importlib.util
+import os
 import re
 import subprocess
 import sys
+import threading
+import time
 import traceback
 from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
@@ -27,12 +30,17 @@ __all__ = ["main"]
 
 _DEMO = Path(__file__).parent / "data" / "quillmere" / "scenario.toml"
 
+_LAB = ("jupyterlab", "ipywidgets", "jupyter_bokeh")
+
 _NAMED_PAIRS = 12
 """How many gained or lost pairs the printed table names before it only counts them."""
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run the command and return its exit code."""
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):  # what a terminal cannot show must not end the work
+            stream.reconfigure(errors="replace")
     options = _parser().parse_args(arguments)
     try:
         code: int = options.run(options)
@@ -43,8 +51,13 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print("fzconnect: stopped; nothing half-written was left behind", file=sys.stderr)
         return 130
     except BrokenPipeError:  # the reader of our output, such as `head`, has gone away
-        sys.stderr.close()
+        # else Python, at its end, would stumble over what is still to be printed
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return 1
+    except OSError as error:
+        place = f"{error.filename}: " if error.filename else ""
+        print(f"fzconnect: {place}{error.strerror or error}", file=sys.stderr)
+        return 2
     except Exception as error:
         if options.debug:
             traceback.print_exc()
@@ -168,7 +181,7 @@ def write_study(
     from fzconnect.views import report_html
 
     check_folder(out, overwrite=overwrite)
-    with _Progress("windows and network", is_shown=progress) as step:
+    with _Progress("windows and network (longer the first time)", is_shown=progress) as step:
         result = study(scenario)
         step(1, 1)
     if show:
@@ -202,11 +215,11 @@ def answer_text(study: Study) -> str:
             f"{counts['unfaulted_contacts']}",
             f"{single['unfaulted_contacts']}",
         ),
-        ("window area, m2", f"{counts['window_area']:,.0f}", f"{single['window_area']:,.0f}"),
+        ("window area, m2", _area(counts["window_area"]), _area(single["window_area"])),
         (
             "widest bottleneck, m2",
-            f"{counts['widest_bottleneck']:,.0f}",
-            f"{single['widest_bottleneck']:,.0f}",
+            _area(counts["widest_bottleneck"]),
+            _area(single["widest_bottleneck"]),
         ),
         ("critical windows", f"{counts['critical_windows']}", f"{single['critical_windows']}"),
     ]
@@ -242,43 +255,81 @@ def _changes(study: Study, change: str, label: str) -> str:
     )
 
 
+def _area(area: float) -> str:
+    return f"{area:,.0f}" if area >= 100 else f"{area:.3g}"
+
+
 class _Progress:
-    """A progress bar on the error stream that shows itself only after a second."""
+    """A progress bar on the error stream that shows itself only after a second.
+
+    A thread of its own draws it, so that a long step without news is seen to go on.
+    """
 
     def __init__(self, what: str, *, is_shown: bool) -> None:
-        from tqdm import tqdm
-
-        self._bar = tqdm(
-            total=1, desc=what, delay=1.0, leave=False, file=sys.stderr, disable=not is_shown
-        )
+        self._what = what
+        self._done, self._total = 0, 1
+        self._ended = threading.Event()
+        self._thread = threading.Thread(target=self._draw, daemon=True) if is_shown else None
 
     def __enter__(self) -> _Progress:
+        if self._thread:
+            self._thread.start()
         return self
 
     def __call__(self, done: int, total: int) -> None:
-        self._bar.total = total
-        self._bar.update(done - self._bar.n)
+        self._done, self._total = done, total
 
     def __exit__(self, *_: object) -> None:
-        self._bar.close()
+        self._ended.set()
+        if self._thread:
+            self._thread.join()
+
+    def _draw(self) -> None:
+        begun = time.time()
+        if self._ended.wait(1.0):
+            return
+        from tqdm import tqdm
+
+        form = "{desc}: {percentage:3.0f}% |{bar:20}| {elapsed}"
+        with tqdm(desc=self._what, leave=False, file=sys.stderr, bar_format=form) as bar:
+            bar.start_t = begun
+            while True:
+                bar.total, bar.n = self._total, self._done
+                bar.refresh()
+                if self._ended.wait(0.5):
+                    return
 
 
 def _lab(options: argparse.Namespace) -> int:
-    if importlib.util.find_spec("jupyterlab") is None:
-        msg = "the notebooks need JupyterLab: python -m pip install 'fzconnect[lab]'"
+    missing = [name for name in _LAB if importlib.util.find_spec(name) is None]
+    if missing:
+        msg = f"the notebooks need {' and '.join(missing)}: python -m pip install 'fzconnect[lab]'"
         raise FzconnectError(msg)
-    from fzconnect.scenario.store import write_file
+    from fzconnect.scenario.store import create_folder, write_file
 
-    for notebook in notebooks():
-        target = options.folder / notebook.name
-        if target.exists():
-            print(f"kept {target}, which is there already")
+    folder: Path = options.folder
+    books = {path.name: path.read_bytes() for path in notebooks()}
+    kept = [name for name in books if (folder / name).exists()]
+    if os.path.lexists(folder):
+        for name in books.keys() - set(kept):
+            write_file(folder / name, books[name])
+    else:
+        create_folder(folder, books)
+    for name in books:
+        fate = "kept, which is there already:" if name in kept else "copied"
+        print(f"{fate} {folder / name}")
+    return 0 if options.no_open else _open_lab(folder)
+
+
+def _open_lab(folder: Path) -> int:
+    """Run JupyterLab on a folder until it ends; return its exit code."""
+    lab = subprocess.Popen([sys.executable, "-m", "jupyterlab", str(folder)])
+    while True:
+        try:
+            return lab.wait()
+        except KeyboardInterrupt:
+            # The key reaches JupyterLab too, which asks whether to stop, and ends or goes on.
             continue
-        write_file(target, notebook.read_bytes())
-        print(f"copied {target}")
-    if options.no_open:
-        return 0
-    return subprocess.call([sys.executable, "-m", "jupyterlab", str(options.folder)])
 
 
 def notebooks() -> list[Path]:

@@ -9,6 +9,7 @@ import math
 import os
 import subprocess
 import sys
+import time
 from itertools import pairwise
 from pathlib import Path
 
@@ -149,6 +150,55 @@ def test_a_full_disk_leaves_nothing(tmp_path, monkeypatch, capsys):
     assert not list(tmp_path.iterdir())
 
 
+def test_a_disk_that_fails_elsewhere_is_no_fault_of_ours(tmp_path, monkeypatch, capsys):
+    def full(*_: object, **__: object) -> None:
+        raise OSError(errno.ENOSPC, os.strerror(errno.ENOSPC), "cache")
+
+    monkeypatch.setattr("fzconnect.network.study", full)
+    assert cli.main(["study", "--out", str(tmp_path / "out")]) == 2
+    assert capsys.readouterr().err == "fzconnect: cache: No space left on device\n"
+
+
+def test_a_step_of_over_a_second_shows_how_far_it_is(capsys):
+    with cli._Progress("long", is_shown=True) as step:
+        step(1, 4)
+        time.sleep(1.3)
+    with cli._Progress("short", is_shown=True):
+        pass
+    with cli._Progress("unseen", is_shown=False):
+        pass
+    told = capsys.readouterr().err
+    assert "long:  25%" in told
+    assert "short" not in told
+
+
+def test_names_that_a_terminal_cannot_show_do_not_end_the_work(tmp_path):
+    assert cli.main(["new", str(tmp_path / "mine")]) == 0
+    path = tmp_path / "mine" / "scenario.toml"
+    path.write_text(path.read_text("utf-8").replace("My fault zone", "砂 zone"), "utf-8")
+    done = subprocess.run(
+        [sys.executable, "-m", "fzconnect.cli", "study", path, "--out", tmp_path / "out"],
+        env={**os.environ, "PYTHONIOENCODING": "ascii"},
+        capture_output=True,
+        text=True,
+        check=False,
+    )
+    assert done.returncode == 0, done.stderr
+    assert done.stdout.startswith("? zone\n")
+
+
+def test_a_reader_that_goes_away_leaves_no_traceback(tmp_path):
+    command = [sys.executable, "-m", "fzconnect.cli", "study", "--out", tmp_path / "out"]
+    with subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE) as study:
+        assert study.stdout
+        assert study.stderr
+        study.stdout.close()
+        told = study.stderr.read().decode()
+        assert study.wait() in (0, 1)
+    assert "Traceback" not in told
+    assert "BrokenPipe" not in told
+
+
 @pytest.mark.parametrize(
     ("content", "said"),
     [
@@ -211,6 +261,39 @@ def test_lab_copies_the_notebooks_and_keeps_what_is_there(tmp_path, capsys):
     assert cli.main(["lab", str(folder), "--no-open"]) == 0
     assert notebook.read_text() == "changed by hand"
     assert "kept" in capsys.readouterr().out
+
+
+def test_lab_fills_a_folder_that_is_there_and_makes_its_parents(tmp_path):
+    (tmp_path / "notes.txt").write_text("mine")
+    for folder in (tmp_path, tmp_path / "deep" / "books"):
+        assert cli.main(["lab", str(folder), "--no-open"]) == 0
+        assert (folder / "01-first-look.ipynb").is_file()
+    assert (tmp_path / "notes.txt").read_text() == "mine"
+
+
+def test_lab_says_what_is_not_installed(tmp_path, monkeypatch, capsys):
+    monkeypatch.setattr(cli, "_LAB", ("jupyterlab", "no_such_module"))
+    assert cli.main(["lab", str(tmp_path / "books"), "--no-open"]) == 2
+    assert "the notebooks need no_such_module: python -m pip" in capsys.readouterr().err
+    assert not (tmp_path / "books").exists()
+
+
+def test_an_interrupt_is_left_to_jupyterlab(tmp_path, monkeypatch):
+    class Lab:
+        waits = 0
+
+        def __init__(self, command: list[str]) -> None:
+            assert command[1:] == ["-m", "jupyterlab", str(tmp_path / "books")]
+
+        def wait(self) -> int:
+            Lab.waits += 1
+            if Lab.waits == 1:
+                raise KeyboardInterrupt
+            return 0
+
+    monkeypatch.setattr(subprocess, "Popen", Lab)
+    assert cli.main(["lab", str(tmp_path / "books")]) == 0
+    assert Lab.waits == 2
 
 
 @pytest.mark.parametrize("arguments", [["study", "--pathways", "0"], [], ["nothing"]])

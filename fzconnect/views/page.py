@@ -108,12 +108,13 @@ def paragraph(text: str, kind: str = "") -> str:
     return f'<p class="{kind}">{escape(text)}</p>' if kind else f"<p>{escape(text)}</p>"
 
 
-def facts(rows: Iterable[tuple[str, str, str]]) -> str:
-    """Return figures to be read at a glance: what, how much, and what stands beside it."""
+def facts(rows: Iterable[tuple[str, str, Sequence[str]]]) -> str:
+    """Return figures to be read at a glance: what, how much, and lines that stand below it."""
     boxes = "".join(
-        f'<div><dt>{escape(what)}</dt><dd>{escape(value)}</dd><dd class="beside">'
-        f"{escape(beside)}</dd></div>"
-        for what, value, beside in rows
+        f"<div><dt>{escape(what)}</dt><dd>{escape(value)}</dd>"
+        + "".join(f'<dd class="beside">{escape(line)}</dd>' for line in lines)
+        + "</div>"
+        for what, value, lines in rows
     )
     return f'<dl class="figures">{boxes}</dl>'
 

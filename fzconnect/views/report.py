@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from html import escape
 from typing import TYPE_CHECKING, Any
 
@@ -10,11 +10,12 @@ import numpy as np
 
 from fzconnect.network.export import CAUTION, summary
 from fzconnect.views.faces import faces_figure
-from fzconnect.views.look import area_text, number_text
+from fzconnect.views.look import number_text
 from fzconnect.views.page import document, embedded, facts, listed, paragraph, table
 from fzconnect.views.pairmatrix import outcome, pair_matrix_figure
 from fzconnect.views.pathgraph import pathway_graph_figure
 from fzconnect.views.section import section_figure
+from fzconnect.views.strip import strip_figures
 
 if TYPE_CHECKING:
     from bokeh.plotting import figure
@@ -127,14 +128,9 @@ def _answer(study: Study) -> list[str]:
         sentences.append(f"Only the single plane connects {_names(lost)}{side}.")
     if not gained and not lost:
         sentences.append("Both answers connect the same pairs.")
-    rows: list[tuple[str, str, Callable[[Any], str]]] = [
-        ("Connected sand pairs", "connected_pairs", str),
-        ("Area of all windows", "window_area", area_text),
-        ("Widest bottleneck", "widest_bottleneck", area_text),
-        ("Critical windows", "critical_windows", str),
-    ]
     boxes = [
-        (what, show(zone[key]), f"single plane: {show(plane[key])}") for what, key, show in rows
+        (one.label, one.value, (f"single plane: {one.single_plane}", one.note))
+        for one in strip_figures(study)
     ]
     warnings = [
         f'<div class="warning">{paragraph(sentence[:1].upper() + sentence[1:] + ".")}</div>'
@@ -152,8 +148,9 @@ def _answer(study: Study) -> list[str]:
         *warnings,
         paragraph(
             "A pair connects if windows lead from the one sand to the other, through lenses and "
-            "from sand to sand. A bottleneck is the smallest window on the widest pathway of a "
-            "pair. A critical window is one whose closing alone separates sands.",
+            "from sand to sand. A bottleneck is the least area that two sand bodies share on the "
+            "widest pathway of a pair. A critical window is one whose closing alone separates a "
+            "hanging-wall sand from a footwall sand.",
             "quiet",
         ),
     ]
@@ -239,7 +236,7 @@ def _pathways(ranked: Sequence[RankedPathway]) -> list[str]:
     shown = sorted(ranked, key=lambda one: one.rank)[:_MOST_PATHWAYS]
     caption = (
         "Pathways from hanging wall to footwall, the one of least resistance first for each pair. "
-        "Resistance is the sum of one over the area of each window on the way."
+        "Resistance is the sum, over the crossings, of one over the area that two bodies share."
         + _cut(len(ranked), _MOST_PATHWAYS, "pathways.csv")
     )
     columns = [

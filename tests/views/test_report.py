@@ -10,6 +10,7 @@ from fzconnect.network.export import CAUTION
 from fzconnect.scenario import Column, Layer, Scenario, Strands, Throw
 from fzconnect.views import report_html
 from fzconnect.views.page import listed
+from fzconnect.views.strip import strip_figures
 
 FETCHES = ("src", "href", "data", "action", "poster", "srcset")
 
@@ -63,6 +64,9 @@ def test_the_report_says_what_it_must(page: str, quillmere: Study) -> None:
     assert f"{zone['connected_pairs']} of {len(quillmere.pairs)} pairs" in text
     assert f"{plane['connected_pairs']} connect across a single plane" in text
     assert "S8 with S8" in text  # gained
+    for one in strip_figures(quillmere):
+        figures = (one.label, one.value, f"single plane: {one.single_plane}", one.note)
+        assert " ".join(" ".join(figures).split()) in text
     for sentence in quillmere.warnings:
         assert sentence[1:] in text
     assert "0f" * 32 in text

@@ -44,7 +44,7 @@ _GAP = 0.07
 """Gap between facets, part of the fault's length."""
 _LEADER = 0.035
 """Length of the line from a band to its name, part of the width of all facets."""
-_NARROW = 480  # px across that a narrow figure has for its facets
+_PLANE = 88  # px that the title of the last facet takes
 _AXES = 150  # px that title, key and axis take from the figure's height
 _UNSEEN = 0.35
 """Part of a pixel by which an outline may be off."""
@@ -68,7 +68,7 @@ class FacesView(Picture):
         """Show another study, or the section line at another distance, m."""
         if study is not self._study:
             self._study = study
-            self._lay_out(study)
+            self._fit()
             self._bands(study)
             self._windows(study)
             self._draw_mark(self._shown)
@@ -85,6 +85,11 @@ class FacesView(Picture):
         lower, upper = (node.partition(": ")[2] for node in edge)
         return of_pair(self._study, upper, lower)
 
+    def _fit(self) -> None:
+        super()._fit()
+        if self._study is not None:
+            self._lay_out(self._study)
+
     def _lay_out(self, study: Study) -> None:
         """Set the facets' offsets, the ranges, the ticks and the facet titles."""
         zone = study.zone
@@ -100,10 +105,12 @@ class FacesView(Picture):
         self._pixel = (base - top + 2 * pad) / max(1, self._height - _AXES)
         longest = max(len(body.name) for body in zone.bodies)
         # names stand outside the first and the last facet, also in a narrow figure
-        beside = (_LEADER + (8 * min(longest, 12) + 16) / _NARROW) * self._end
+        room = min(8 * min(longest, 12) + 16, 0.25 * self.width)  # px on either side
+        beside = (_LEADER + room / (self.width - 2 * room)) * self._end
+        facet = length / (self._end + 2 * beside) * self.width  # px
         set_range(self.figure.x_range, -beside, self._end + beside)
         set_range(self.figure.y_range, self._base, self._top - 22 * self._pixel)
-        step = nice_step(length, 4 if count <= 3 else 2 if count <= 4 else 1)
+        step = nice_step(length, max(1, int(facet / 56)))
         ticks = np.arange(np.ceil(first / step) * step, first + length + 1e-6 * step, step)
         labels = {
             float(offset + tick - first): number_text(float(tick))
@@ -114,12 +121,14 @@ class FacesView(Picture):
         }
         relabel(self.figure.xaxis[0], labels)
         ends = f"{number_text(first)} to {number_text(first + length)}"
-        self.figure.xaxis[0].axis_label = f"Distance along the fault, m ({ends} in every frame)"
-        prefix = "strand " if count <= 4 else ""
+        self.figure.xaxis[0].axis_label = f"Along the fault, m: {ends} in each frame"
+        longest = max(len(name) for name in zone.strand_names)
+        prefix = "strand " if facet > 9 * (7 + longest) else ""
+        plane = "single plane" if facet + room > _PLANE else "plane"
         self._sources["titles"].data = {
             "x": self._offsets,
             "y": np.full(count, self._top - 11 * self._pixel),
-            "text": [*(f"{prefix}{name}" for name in zone.strand_names), "single plane"],
+            "text": [*(f"{prefix}{name}" for name in zone.strand_names), plane],
         }
         self._sources["frames"].data = {
             "left": self._offsets,
@@ -334,7 +343,6 @@ class FacesView(Picture):
                 ("unfaulted contact", draw(plot, Patches, "xs", "ys", source=shape, **joined)),
                 ("section", draw(plot, Segment, *ends, source=line, **here)),
             ],
-            columns=3,
         )
         card = tooltip(("@name", ""), ("on", "@where"), ("area", "@area"))
         self._make_hoverable((windows, card), (contacts, card))

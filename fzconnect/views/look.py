@@ -35,6 +35,7 @@ __all__ = [
     "base_figure",
     "block_text",
     "draw",
+    "key_columns",
     "nice_step",
     "number_text",
     "one_row",
@@ -49,13 +50,15 @@ __all__ = [
 ]
 
 FONT = "'Source Sans Pro', 'Segoe UI', 'Helvetica Neue', Arial, sans-serif"
-TITLE_SIZE = "17px"
+TITLE_SIZE = "16px"
 LABEL_SIZE = "14px"
 SMALL_SIZE = "13px"
 LINE = 16
 """Pixels that one line of small text takes."""
 
 Array = NDArray[np.float64]
+
+_KEY_GLYPH, _CHARACTER = 36, 6.0  # px: a glyph of the key with its gaps, a character beside it
 
 
 def base_figure(height: int, **options: Any) -> figure:
@@ -75,7 +78,7 @@ def base_figure(height: int, **options: Any) -> figure:
         "tools": "pan,wheel_zoom,box_zoom,reset,save",
         "active_drag": None,
         "active_scroll": None,
-        "toolbar_location": "right",
+        "toolbar_location": "above",
         "background_fill_color": PAPER,
         "border_fill_color": PAPER,
         "outline_line_color": RULE,
@@ -107,28 +110,41 @@ def style_axis(axis: Any) -> None:
     )
 
 
-def add_key(
-    plot: figure, items: Sequence[tuple[str, GlyphRenderer[Any]]], *, columns: int
-) -> Legend:
+def add_key(plot: figure, items: Sequence[tuple[str, GlyphRenderer[Any]]]) -> Legend:
     """Add a key below a figure, in words; each entry shows the glyph of its renderer."""
     key = Legend(
         items=[LegendItem(label=words, renderers=[glyph]) for words, glyph in items],
         orientation="horizontal",
-        ncols=columns,
+        ncols=2,
         location="left",
         border_line_color=None,
         background_fill_color=None,
         label_text_font=FONT,
         label_text_font_size=SMALL_SIZE,
         label_text_color=INK,
-        glyph_width=26,
-        glyph_height=18,
-        spacing=14,
-        margin=4,
+        glyph_width=24,
+        glyph_height=16,
+        spacing=8,
+        margin=2,
     )
-    key.update(padding=4)
+    key.update(padding=2)
     plot.add_layout(key, "below")
     return key
+
+
+def key_columns(labels: Sequence[str], width: float) -> int:
+    """Return into how many columns a key goes that has this width, px, for itself.
+
+    Examples
+    --------
+    >>> key_columns(["sand", "shale", "window", "unfaulted contact"], 250)
+    2
+    """
+    lengths = [_KEY_GLYPH + _CHARACTER * len(label) for label in labels]
+    for count in range(len(labels), 1, -1):
+        if sum(max(lengths[start::count]) for start in range(count)) <= width:
+            return count
+    return 1
 
 
 def one_row(**columns: Any) -> ColumnDataSource:

@@ -92,13 +92,14 @@ class PairMatrixView(Picture):
             },
         )
         zone, plane = (sum(kind[i] for kind in kinds) for i in (0, 1))
-        title = f"Sand pairs: {zone} of {len(kinds)} connect, {plane} across a single plane"
+        title = f"Sand pairs: {zone} of {len(kinds)}, single plane {plane}"
         set_title(self.figure, title)
         item: Any
         for item, (kind, words) in zip(self._key.items, OUTCOMES.items(), strict=True):
             label = {"value": f"{words} ({kinds.count(kind)})"}
             if item.label != label:
                 item.label = label
+        self._fit()
         self._draw_mark(self._shown)
 
     def picked(self, source: str, index: int) -> Selection | None:
@@ -183,7 +184,7 @@ class PairMatrixView(Picture):
                 line_width=2.4,
             )
             items.append((words, glyph))
-        self._key = add_key(plot, items, columns=2)
+        self._key = add_key(plot, items)
         card = tooltip(
             ("@hanging", "in the hanging wall, <b>@foot</b> in the footwall"),
             ("", "@words"),

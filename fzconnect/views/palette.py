@@ -57,7 +57,7 @@ def _blend(first: str, last: str, steps: int) -> tuple[str, ...]:
 
 SANDS = _blend("#FFF6DC", "#E8B45A", 41)
 """Pale straw to amber for a shale fraction of 0 to 0.5."""
-SHALES = _blend("#E9EDF1", "#8592A0", 41)
+SHALES = _blend("#EEF1F4", "#A3AEBA", 41)
 """Cool greys for a shale fraction of 0.3 to 0.9."""
 SAND_SCALE = (0.0, 0.5)
 SHALE_SCALE = (0.3, 0.9)

@@ -36,6 +36,9 @@ __all__ = ["PathwayGraphView", "pathway_graph_figure"]
 
 _HALF = 0.11
 """Half the width of a bar; blocks are 1 apart."""
+_LEADER = 26  # px from a bar to its name, leader and air included
+_CHARACTER = 7  # px that a character of a name takes
+_WALL_NAME, _LENS_NAME = 84, 46  # px that the names of a wall and of a lens take, with air
 _AXES = 150  # px that title, key and axis take from the figure's height
 
 
@@ -60,7 +63,7 @@ class PathwayGraphView(Picture):
         self._study = study
         self._nodes(study)
         self._edges(study)
-        self._names(study)
+        self._fit()
         self._draw_mark(self._shown)
 
     def picked(self, source: str, index: int) -> Selection | None:
@@ -137,16 +140,28 @@ class PathwayGraphView(Picture):
             "y": [0.5 * (y0 + y1) for _, y0, _, y1, _ in places],
         }
 
+    def _fit(self) -> None:
+        super()._fit()
+        if self._study is not None:
+            self._names(self._study)
+
     def _names(self, study: Study) -> None:
         """Name blocks and strands above, and the sands beside both outer columns."""
         zone = study.zone
         blocks, last = zone.block_names, zone.strand_count
         longest = max(len(body.name) for body in zone.bodies)
-        beside = (0.28 + 0.022 * min(longest, 14)) * max(1.0, last / 2.5)
+        room = min(_LEADER + 8 * min(longest, 14), 0.3 * self.width)  # px on either side
+        unit = (self.width - 2 * room) / (last + 2 * _HALF)  # px from block to block
+        beside = room / unit
         set_range(self.figure.x_range, -beside - _HALF, last + beside + _HALF)
-        titles = [name.replace(" ", "\n") if last > 3 else name for name in blocks]
-        relabel(self.figure.xaxis[0], {float(j): name for j, name in enumerate(titles)})
-        prefix = "strand " if last < 5 else ""
+        walls = (name if unit > _WALL_NAME else name.replace(" ", "\n") for name in blocks)
+        titles = {float(j): name for j, name in enumerate(walls) if j in (0, last)}
+        if unit > _LENS_NAME:
+            titles |= {float(j): blocks[j] for j in range(1, last)}
+        elif last > 1:
+            titles[0.5 * last] = f"lenses 1 to {last - 1}"
+        relabel(self.figure.xaxis[0], dict(sorted(titles.items())))
+        prefix = "strand " if unit > _CHARACTER * (7 + max(map(len, zone.strand_names))) else ""
         self._sources["strands"].data = {
             "x": [j + 0.5 for j in range(last)],
             "y": [self._top - 20 * self._pixel] * last,
@@ -158,7 +173,7 @@ class PathwayGraphView(Picture):
             "x1": [float(j) for j in range(last + 1)],
             "y1": [self._base] * (last + 1),
         }
-        gap, step = LINE * self._pixel, 0.1 * max(1.0, last / 2.5)
+        gap, step = LINE * self._pixel, 0.5 * _LEADER / unit
         columns: dict[str, list[Any]] = {name: [] for name in _NAME}
         for block, sign, align in ((0, -1.0, "right"), (last, 1.0, "left")):
             ids = [f"{blocks[block]}: {sand}" for sand in study.network.sands]
@@ -196,7 +211,7 @@ class PathwayGraphView(Picture):
             title="Pathway graph",
             x_range=Range1d(start=0, end=1),
             y_range=Range1d(start=1, end=0),
-            y_axis_label="Middle depth of the sand, m",
+            y_axis_label="Depth, m",
             x_axis_location="above",
             outline_line_color=None,
         )
@@ -300,7 +315,7 @@ class PathwayGraphView(Picture):
             plot,
             [
                 (
-                    "sand, as tall as it is thick",
+                    "sand",
                     draw(
                         plot,
                         Rect,
@@ -314,7 +329,7 @@ class PathwayGraphView(Picture):
                     ),
                 ),
                 (
-                    "window, wider for a larger area",
+                    "window, by area",
                     draw(plot, Segment, *ends, source=one_row(**line), line_width=7, **violet),
                 ),
                 (
@@ -328,7 +343,6 @@ class PathwayGraphView(Picture):
                     ),
                 ),
             ],
-            columns=2,
         )
         edge_card = tooltip(
             ("@name", ""),

@@ -4,15 +4,20 @@ from __future__ import annotations
 
 from abc import ABC, abstractmethod
 from collections.abc import Callable, Mapping
+from contextlib import AbstractContextManager, nullcontext
 from typing import Any
 
 from bokeh.models import ColumnDataSource, HoverTool, TapTool
+from bokeh.models.annotations.legends import Legend
 from bokeh.models.renderers.glyph_renderer import GlyphRenderer
 from bokeh.plotting import figure
 
+from fzconnect.views.look import key_columns
 from fzconnect.views.selection import NOTHING, Selection
 
 __all__ = ["Picture"]
+
+ASSUMED_WIDTH = 560  # px, until a browser reports the real one
 
 
 class Picture(ABC):
@@ -31,6 +36,11 @@ class Picture(ABC):
     """
 
     figure: figure
+    batch: Callable[[], AbstractContextManager[None]] = staticmethod(nullcontext)
+    """Gives a context for drawing: the `batch` of the pane that shows the figure."""
+    width: float = ASSUMED_WIDTH
+    """Pixels across that the data have."""
+    _beside_key = 0  # px right of the data that a key may take as well
 
     def __init__(self) -> None:
         self.tappable: dict[str, ColumnDataSource] = {}
@@ -72,9 +82,27 @@ class Picture(ABC):
         """Call back with a selection whenever a tap chooses one, or `NOTHING` at an empty place."""
         if not self._callbacks:
             # only now: bokeh warns when a figure that Python listens to is written to a file
+            self.figure.on_change("inner_width", self._on_width)
             for source in self.tappable.values():
                 source.selected.on_change("indices", self._on_indices)
         self._callbacks.append(callback)
+
+    def _fit(self) -> None:
+        """Set what depends on the width: the key, and in some pictures room for labels."""
+        for key in (part for part in self.figure.below if isinstance(part, Legend)):
+            # the key may reach under the labels right of the data
+            items: Any = key.items
+            labels = [item.label["value"] for item in items]
+            columns = key_columns(labels, self.width + self._beside_key)
+            if key.ncols != columns:
+                key.ncols = columns
+
+    def _on_width(self, _attr: str, _old: object, new: int) -> None:
+        # a browser has laid the figure out, or its window has another width now
+        if new > 0:
+            self.width = new
+            with self.batch():
+                self._fit()
 
     def _make_tappable(self, renderers: Mapping[str, Any]) -> None:
         """Let taps choose glyphs of these renderers."""

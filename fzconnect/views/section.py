@@ -37,8 +37,10 @@ _TOO_WIDE = 0.8
 _BESIDE = 0.22
 """Part of the depth range shown of the footwall and of the hanging wall."""
 _TOO_SMALL = 1e-6
-_UPRIGHT_LENS, _UPRIGHT_ZONE = 0.22, 0.9
-"""Parts of the depth range that an upright lens, and all of them together, take at most."""
+_UPRIGHT_LENS, _UPRIGHT_ZONE, _UPRIGHT_BESIDE = 0.22, 0.9, 0.34
+"""Parts of the depth range: an upright lens, all of them together at most, and the rock beside."""
+_LENS_NAME, _WALL_NAME = 42, 90  # px that the names of a lens and of a wall take, with air
+_WALL_PART = 64  # px that the longer word of a wall's name takes, with air
 _AXES = 132  # px that title, key and axis take from the figure's height
 
 
@@ -54,6 +56,8 @@ class SectionView(Picture):
         Whether strands are drawn upright and lenses equally wide, to see what touches what, and
         not to scale. Change it with `stand`.
     """
+
+    _beside_key = 30  # names of sands stand there
 
     def __init__(self, study: Study, distance: float, height: int, is_upright: bool) -> None:
         super().__init__()
@@ -83,7 +87,7 @@ class SectionView(Picture):
         if self.is_upright:
             section = section.upright(self._lens)
         self._study, self._section = study, section
-        set_title(self.figure, f"Section at {number_text(distance)} m along the fault")
+        set_title(self.figure, f"Section at {number_text(distance)} m")
         self._layers(zone, section)
         self._strands(zone, section)
         self._windows(study, section)
@@ -106,6 +110,12 @@ class SectionView(Picture):
             return of_node(found[index])
         return of_edge(self._study, found[index])
 
+    def _fit(self) -> None:
+        super()._fit()
+        if self._zone is not None and self.is_upright:
+            self._zone = None
+            self.update(self._study, self._section.distance)
+
     def _frame(self, zone: FaultZone) -> None:
         """Set what holds for a zone at every distance: scale, edges and depth range."""
         depths = np.concatenate([zone.faces[0, 0], zone.faces[-1, 1]])
@@ -124,13 +134,22 @@ class SectionView(Picture):
         self._span = (top, base)
         self._room = 4.0 * span / stretch  # rock drawn beside the zone, past any frame
         beside = _BESIDE * span / stretch
+        if self.is_upright:
+            room = min(_WALL_PART, 0.3 * self.width)  # px at least
+            beside = max(_UPRIGHT_BESIDE * span, zone_width * room / (self.width - 2 * room))
         pixel = span / max(1, self._height - _AXES)  # metres that a pixel stands for, about
         self._pixel = pixel
         half = 0.5 * (zone_width + slope * span)
+        across = 2 * (half + beside) / self.width
+        self._pixel_x = across if self.is_upright else pixel / stretch
+        self._fits_lens = self.is_upright and self._lens >= _LENS_NAME * across
+        self._is_wide = not self.is_upright or beside >= _WALL_NAME * across
         names = max(len(name) for name in zone.strand_names)
         self._names_upright = zone.strand_count > 1 and names > 3
         above = (26 + 9 * names if self._names_upright else 38) * pixel
-        below = (70 if zone.strand_count > 1 else 8) * pixel
+        below = (
+            70 if zone.strand_count > 1 and not self._fits_lens else 34 if self._is_wide else 50
+        ) * pixel
         self._sources["frame"].data = {
             "left": [-half - beside],
             "right": [half + beside],
@@ -143,10 +162,11 @@ class SectionView(Picture):
         axis = self.figure.xaxis[0]
         self.stretch = stretch
         self.figure.aspect_scale = float(stretch)
+        self.figure.match_aspect = not self.is_upright
         axis.major_label_text_alpha = 0.0 if self.is_upright else 1.0
         axis.major_tick_line_alpha = axis.major_label_text_alpha
         if self.is_upright:
-            axis.axis_label = "Across the fault: strands upright, lenses widened, not to scale"
+            axis.axis_label = "strands upright, not to scale"
         else:
             scale = "equal scale" if stretch == 1 else f"stretched {stretch} times"
             axis.axis_label = f"Across the fault, m ({scale})"
@@ -207,7 +227,7 @@ class SectionView(Picture):
                 {key: [column[row] for row in rows] for key, column in lines.items()},
             )
         # names stand apart where strands do not; a thin line leads from each to its own
-        pixel_x = self._pixel / self.stretch
+        pixel_x = self._pixel_x
         start = x_top - lean
         apart = 15 if self._names_upright else 8 * max(map(len, zone.strand_names)) + 6
         self._sources["strand names"].data = {
@@ -225,23 +245,27 @@ class SectionView(Picture):
         }
         end = x_base + lean
         middle = 0.5 * (end[:-1] + end[1:])
-        names = spread(middle, 15 * pixel_x)
-        outer = [float(end[0]) - 12 * pixel_x, float(end[-1]) + 12 * pixel_x]
-        if count > 1:
+        names = middle if self._fits_lens else spread(middle, 15 * pixel_x)
+        foot = base + 2.9 * reach  # where leaders end
+        flat = self._fits_lens
+        outer = [float(end[0]) - 8 * pixel_x, float(end[-1]) + 8 * pixel_x]
+        if count > 1 and not flat:
             outer = [
-                min(outer[0], float(names[0]) - 14 * pixel_x),
-                max(outer[1], float(names[-1]) + 14 * pixel_x),
+                min(outer[0], float(names[0]) - 12 * pixel_x),
+                max(outer[1], float(names[-1]) + 12 * pixel_x),
             ]
         self._sources["block names"].data = {
             "x": [outer[0], *names.tolist(), outer[1]],
-            "y": [base + 3.2 * reach] * (count + 1),
-            "text": list(zone.block_names),
-            "angle": [0.0, *[np.pi / 2] * (count - 1), 0.0],
-            "align": ["right", *["right"] * (count - 1), "left"],
-            "baseline": ["top", *["middle"] * (count - 1), "top"],
-            "x0": [outer[0], *middle.tolist(), outer[1]],
-            "y0": [base + 2.9 * reach, *[base + reach] * (count - 1), base + 2.9 * reach],
-            "y1": [base + 2.9 * reach] * (count + 1),
+            "y": [base + (1.6 if flat else 3.2) * reach] * (count + 1),
+            "text": [
+                name if self._is_wide else name.replace("g w", "g\nw") for name in zone.block_names
+            ],
+            "angle": [0.0, *[0.0 if flat else np.pi / 2] * (count - 1), 0.0],
+            "align": ["right", *["center" if flat else "right"] * (count - 1), "left"],
+            "baseline": ["top", *["top" if flat else "middle"] * (count - 1), "top"],
+            "x0": [outer[0], *(names if flat else middle).tolist(), outer[1]],
+            "y0": [foot, *[foot if flat else base + reach] * (count - 1), foot],
+            "y1": [foot] * (count + 1),
         }
 
     def _windows(self, study: Study, section: Section) -> None:

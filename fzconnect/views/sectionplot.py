@@ -138,7 +138,7 @@ def section_plot(source: dict[str, ColumnDataSource], height: int) -> SectionPlo
             "xs",
             "ys",
             source=one_row(xs=[0.0], ys=[0.0]),
-            fill_color=colours[len(colours) // 3],
+            fill_color=colours[len(colours) // (3 if hatch else 2)],
             **style,
         )
     draw(
@@ -191,18 +191,18 @@ def section_plot(source: dict[str, ColumnDataSource], height: int) -> SectionPlo
         line_width=3,
         line_dash=[2, 3],
     )
-    draw(plot, Segment, *ends, source=source["windows"], line_color=palette.PAPER, line_width=9)
+    draw(plot, Segment, *ends, source=source["windows"], line_color=palette.PAPER, line_width=13)
     windows = draw(
-        plot, Segment, *ends, source=source["windows"], line_color=palette.ACCENT, line_width=6
+        plot, Segment, *ends, source=source["windows"], line_color=palette.ACCENT, line_width=10
     )
-    draw(plot, Segment, *ends, source=source["marks"], line_color=palette.PAPER, line_width=15)
+    draw(plot, Segment, *ends, source=source["marks"], line_color=palette.PAPER, line_width=20)
     draw(
         plot,
         Segment,
         *ends,
         source=source["marks"],
         line_color=palette.ACCENT_DEEP,
-        line_width=10,
+        line_width=15,
     )
     names = {}
     for name, colour, weight in (
@@ -236,11 +236,10 @@ def section_plot(source: dict[str, ColumnDataSource], height: int) -> SectionPlo
             ("sand", layers["sands key"]),
             ("shale", layers["shales key"]),
             ("strand", strands),
-            ("window", _key_line(plot, palette.ACCENT, 6)),
+            ("window", _key_line(plot, palette.ACCENT, 10)),
             ("unfaulted contact", _key_line(plot, palette.ACCENT, 3, [2, 3])),
             ("tip: no strand", _key_line(plot, palette.QUIET, 1.2, [5, 4])),
         ],
-        columns=3,
     )
     renderers = {
         "sands": layers["sands"],

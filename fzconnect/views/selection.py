@@ -10,7 +10,17 @@ from fzconnect.views.look import area_text
 if TYPE_CHECKING:
     from fzconnect.network import Pathway, Study
 
-__all__ = ["NOTHING", "Edge", "Selection", "of_edge", "of_node", "of_pair", "of_pathway", "renewed"]
+__all__ = [
+    "NOTHING",
+    "Edge",
+    "Selection",
+    "of_edge",
+    "of_node",
+    "of_pair",
+    "of_pathway",
+    "renewed",
+    "windows_menu",
+]
 
 Edge = tuple[str, str]
 
@@ -62,6 +72,22 @@ def of_edge(study: Study, edge: Edge) -> Selection:
         f"{area_text(attributes['area'])}"
     )
     return Selection(nodes=edge, edges=(edge,), label=label)
+
+
+def windows_menu(study: Study) -> tuple[list[Edge], list[str]]:
+    """Return all edges of the zone, the largest area first, and a short text for each of them."""
+    graph, critical = study.network.graph, set(study.network.critical_windows)
+    edges = sorted(graph.edges, key=lambda edge: -graph.edges[edge]["area"])
+    ordered = [study.network.ordered(edge) for edge in edges]
+    labels = []
+    for edge in ordered:
+        facts = graph.edges[edge]
+        lower, upper = (graph.nodes[node]["sand"] for node in edge)
+        rank = ", critical" if edge in critical else ""
+        kind = "unfaulted, " if facts["contact"] == "unfaulted" else ""
+        area = area_text(facts["area"])
+        labels.append(f"{facts['strand_name']}: {lower} against {upper}, {kind}{area}{rank}")
+    return ordered, labels
 
 
 def of_pathway(study: Study, pathway: Pathway) -> Selection:

@@ -16,14 +16,15 @@ from bokeh.models import ColumnDataSource, HoverTool, Range1d
 from bokeh.models.annotations import Span
 from bokeh.plotting import figure
 
+from fzconnect.views.look import FONT, LABEL_SIZE, SMALL_SIZE
 from fzconnect.views.palette import ACCENT, INK
 
 __all__ = ["Joint", "SplitBarView", "split_bar"]
 
 TINTS = ("#E3E0EA", "#CFCAD9")  # neighbours differ; the joint between them carries the meaning
-LANE, SECOND_LANE = (0.0, 1.0), (-0.95, -0.25)
-MIDDLE, ABOVE = 0.5, 1.4
-ROWS_BELOW = (-0.38, -0.82)  # labels of pieces too narrow for them; neighbours take turns
+LANE, SECOND_LANE = (0.0, 1.0), (-0.85, -0.2)
+MIDDLE, ABOVE = 0.5, 1.32
+ROWS_BELOW = (-0.26, -0.66)  # labels of pieces too narrow for them; neighbours take turns
 MARGIN = 0.015  # of the bar's length, free at either end for half a handle
 EDGE = 0.05  # of the bar's length: nearer to an end, labels below would leave the figure
 HANDLE = 15  # px, across
@@ -58,8 +59,14 @@ class SplitBarView:
         self._labels = ColumnDataSource(_columns(_LABEL))
         self._handles = ColumnDataSource(_columns(_HANDLE))
         self._range = Range1d(start=0, end=1)
+        self._heading = ColumnDataSource({"x": [], "y": [], "words": []})
         self._total = Span(
-            location=1, dimension="height", line_color=INK, line_dash="dashed", visible=False
+            location=1,
+            dimension="height",
+            line_color=INK,
+            line_dash="dashed",
+            visible=False,
+            level="underlay",
         )
         self._width, self._span = ASSUMED_WIDTH, 0.0
         self.figure = self._draw()
@@ -127,6 +134,9 @@ class SplitBarView:
                 below += 1
         self.joints = tuple(Joint(ends[a][1], a, b) for a, b in pairwise(ends))
         self._total.visible = span > 1
+        heading = "Throw split: drag a joint" if self.joints else "Throw split"
+        if span != self._span or [heading] != self._heading.data["words"]:
+            self._heading.data = {"x": [span / 2], "y": [ABOVE], "words": [heading]}
         if span != self._span:
             self._span = span
             self._range.update(start=-MARGIN * span, end=(1 + MARGIN) * span)
@@ -158,11 +168,11 @@ class SplitBarView:
 
     def _draw(self) -> figure:
         plot = figure(
-            height=112,
+            height=88,
             sizing_mode="stretch_width",
             min_width=220,
             x_range=self._range,
-            y_range=Range1d(start=-1.1, end=1.75),
+            y_range=Range1d(start=-0.9, end=1.65),
             tools="",
             toolbar_location=None,
             outline_line_color=None,
@@ -190,8 +200,21 @@ class SplitBarView:
             source=self._labels,
             text_align="align",
             text_color=INK,
-            text_font_size="12px",
+            text_font={"value": FONT},
+            text_font_size=SMALL_SIZE,
             text_baseline="middle",
+        )
+        plot.text(
+            "x",
+            "y",
+            "words",
+            source=self._heading,
+            text_align="center",
+            text_baseline="middle",
+            text_color=INK,
+            text_font={"value": FONT},
+            text_font_size=LABEL_SIZE,
+            text_font_style="bold",
         )
         plot.add_layout(self._total)
         plot.scatter(
@@ -200,7 +223,7 @@ class SplitBarView:
             source=self._handles,
             marker="dash",
             angle=1.5707963267948966,
-            size=44,
+            size=36,
             line_width=3,
             line_color=ACCENT,
         )

@@ -6,21 +6,25 @@ from dataclasses import dataclass
 from html import escape
 from typing import TYPE_CHECKING
 
+from fzconnect.views.look import FONT
+from fzconnect.views.palette import ACCENT, INK, QUIET
+
 if TYPE_CHECKING:
     from fzconnect.network import Study
 
 __all__ = ["STRIP_STYLE", "Figure", "strip_figures", "strip_html"]
 
-STRIP_STYLE = """
-.fz-strip {display: flex; flex-wrap: wrap; gap: 8px; font-family: system-ui, sans-serif;}
-.fz-figure {flex: 1 1 150px; padding: 6px 12px 8px; border-left: 4px solid #6D28A8;
-  background: #F6F4FA; color: #2B2733;}
-.fz-figure .fz-label {font-size: 13px; line-height: 1.3;}
-.fz-figure .fz-value {font-size: 24px; font-weight: 600; line-height: 1.25;
-  font-variant-numeric: tabular-nums; white-space: nowrap;}
-.fz-figure .fz-plane, .fz-figure .fz-note {font-size: 13px; color: #514B5E; line-height: 1.3;
-  font-variant-numeric: tabular-nums;}
+STRIP_STYLE = f"""
+.fz-strip {{display: grid; grid-template-columns: repeat(auto-fit, minmax(138px, 1fr)); gap: 8px;
+  font-family: {FONT};}}
+.fz-figure {{padding: 4px 10px 5px 12px; border-left: 4px solid {ACCENT};
+  background: #F6F4FA; color: {INK}; font-variant-numeric: tabular-nums;}}
+.fz-figure .fz-label, .fz-figure .fz-plane, .fz-figure .fz-note {{font-size: 13px;
+  line-height: 17px;}}
+.fz-figure .fz-value {{font-size: 23px; font-weight: 700; line-height: 27px; white-space: nowrap;}}
+.fz-figure .fz-note {{color: {QUIET};}}
 """
+"""CSS of the strip, to be put once on the page that shows it."""
 
 
 @dataclass(frozen=True)
@@ -72,7 +76,7 @@ def strip_figures(study: Study, pair: tuple[str, str] | None = None) -> tuple[Fi
             "Critical windows",
             f"{zone['critical_windows']}",
             f"{plane['critical_windows']}",
-            "each alone holds sands together",
+            "closing any one parts a sand pair",
         ),
     )
 

@@ -7,17 +7,16 @@ from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 from ipywidgets import (
-    Accordion,
     Button,
     Dropdown,
     FloatSlider,
     IntSlider,
-    Layout,
     Text,
     VBox,
     Widget,
 )
 
+from fzconnect.views.look import nice_step
 from fzconnect.widgets.params import Params
 
 if TYPE_CHECKING:
@@ -34,7 +33,7 @@ _NO_PATHWAY = ("none", -1)
 _ROUNDING = 1e-9
 # plain words and not a `Layout`: that is a widget, and closing one bench would close it for all
 _FULL = {"width": "auto"}
-_STYLE = {"description_width": "7.5em"}
+_STYLE = {"description_width": "88px"}
 
 
 class Controls:
@@ -58,6 +57,8 @@ class Controls:
         What the controls say now.
     pathway : ipywidgets.Dropdown
         Steps through the pathways of the chosen pair; filled by the workbench.
+    window : ipywidgets.Dropdown
+        Chooses a window; filled by the workbench.
     folder, export : ipywidgets.Text, ipywidgets.Button
         Where to write the study, and the button that does.
     """
@@ -87,19 +88,19 @@ class Controls:
             value=params.distance,
             min=first,
             max=last,
-            step=(last - first) / 200,
+            step=nice_step(last - first, 400),
             description="Distance, m",
             readout_format=".0f",
             **_slider(),
         )
         self.drawn = Dropdown(
-            options=[("strands upright, lenses wide", True), ("to scale", False)],
+            options=[("upright", True), ("to scale", False)],
             description="Drawn",
             style=_STYLE,
             layout=_FULL,
         )
         self.own_split = Button(
-            description="Scenario's own split",
+            description="Back to the scenario's split",
             tooltip="Forget the shares set by hand",
             layout=_FULL,
         )
@@ -107,23 +108,25 @@ class Controls:
         self.upper = Dropdown(options=[_NO_PAIR, *sands], description="Hanging wall", **menu)
         self.lower = Dropdown(options=[_NO_PAIR, *sands], description="Footwall", **menu)
         self.pathway = Dropdown(options=[_NO_PATHWAY], disabled=True, description="Pathway", **menu)
+        self.window = Dropdown(options=[(_NO_PAIR, 0)], description="Window", **menu)
         self.clear = Button(description="Mark nothing", layout=_FULL)
         self.folder = Text(value="study", description="Folder", continuous_update=False, **menu)
+        self.folder.add_class("fz-folder")
         self.export = Button(
             description="Write tables, graph, report",
             tooltip="Studies the scenario as it stands and writes everything to the folder",
             layout=_FULL,
         )
+        marks = (self.upper, self.lower, self.pathway, self.window, self.clear)
         self.widget = VBox(
             [
                 _group("Fault zone", self.count, self.factor),
-                _group("Throw split, %", bar.boxes, self.own_split),
+                _group("Throw split", bar.boxes, self.own_split),
                 _group("Section", self.distance, self.drawn),
-                _group("Sand pair and pathways", self.upper, self.lower, self.pathway, self.clear),
-                _group("Take along", self.folder, self.export, is_open=False),
+                _group("Pair, pathway, window", *marks),
+                _group("Write results", self.folder, self.export, is_open=False),
             ],
-            layout=Layout(flex="0 1 300px", min_width="260px"),
-        )
+        ).add_class("fz-controls")
         self._handles: list[tuple[Widget, Callable[..., None]]] = []
         for control in (
             self.count,
@@ -191,6 +194,26 @@ class Controls:
         finally:
             self._writing = False
 
+    def set_windows(self, labels: Sequence[str]) -> None:
+        """Fill the menu of windows, after an entry for none."""
+        self._writing = True
+        try:
+            self.window.options = [
+                (_NO_PAIR, 0),
+                *((label, i) for i, label in enumerate(labels, 1)),
+            ]
+        finally:
+            self._writing = False
+
+    def show_window(self, index: int) -> None:
+        """Let the menu of windows show an entry, counted from 1, or none by 0."""
+        self._writing = True
+        try:
+            if self.window.value != index:
+                self.window.value = index
+        finally:
+            self._writing = False
+
     @property
     def is_writing(self) -> bool:
         """Whether the controls are being set from code, so that observers should keep still."""
@@ -252,13 +275,19 @@ def _slider() -> dict[str, Any]:
     return {"style": _STYLE, "layout": _FULL, "continuous_update": True}
 
 
-def _group(title: str, *children: Widget, is_open: bool = True) -> Accordion:
-    """Return a folding group of controls."""
-    return Accordion(
-        [VBox(children, layout=Layout(width="100%"))],
-        titles=(title,),
-        selected_index=0 if is_open else None,
-    )
+def _group(title: str, *children: Widget, is_open: bool = True) -> VBox:
+    """Return a group of controls under a button that folds it, which a keyboard reaches as well."""
+    head = Button(description=title).add_class("fz-fold")
+    body = VBox(children).add_class("fz-folded")
+
+    def fold(shown: bool) -> None:
+        body.layout.display = None if shown else "none"
+        head.icon = "caret-down" if shown else "caret-right"
+        head.tooltip = f"{'Fold' if shown else 'Unfold'} {title}"
+
+    head.on_click(lambda _: fold(body.layout.display == "none"))
+    fold(is_open)
+    return VBox([head, body]).add_class("fz-group")
 
 
 def close_widget(widget: Widget) -> None:

@@ -8,22 +8,34 @@ from html import escape
 from typing import TYPE_CHECKING, Any
 
 from bokeh.layouts import column, row
+from IPython.display import Javascript, display
 from ipywidgets import HTML, HBox, Layout, VBox
 
 from fzconnect.errors import FzconnectError
 from fzconnect.network import study
 from fzconnect.network.export import CAUTION
 from fzconnect.views.faces import faces_figure
+from fzconnect.views.look import area_text
 from fzconnect.views.pairmatrix import pair_matrix_figure
 from fzconnect.views.pathgraph import pathway_graph_figure
 from fzconnect.views.section import section_figure
-from fzconnect.views.selection import NOTHING, Selection, of_pair, of_pathway, renewed
-from fzconnect.views.strip import STRIP_STYLE, strip_html
+from fzconnect.views.selection import (
+    NOTHING,
+    Edge,
+    Selection,
+    of_edge,
+    of_pair,
+    of_pathway,
+    renewed,
+    windows_menu,
+)
+from fzconnect.views.strip import strip_html
 from fzconnect.widgets.controls import MOST_STRANDS, Controls, close_widget
 from fzconnect.widgets.pane import FigurePane, show
 from fzconnect.widgets.params import Params
 from fzconnect.widgets.scheduler import Scheduler
 from fzconnect.widgets.splitbar import SplitBar
+from fzconnect.widgets.stylesheet import NAMES_SCRIPT, STYLE
 
 if TYPE_CHECKING:
     from fzconnect.network import Pathway, Study
@@ -33,15 +45,17 @@ __all__ = ["Workbench", "workbench"]
 
 _log = logging.getLogger(__name__)
 
-_STYLE = f"""<style>{STRIP_STYLE}
-.fz-title {{font: 600 18px/1.4 system-ui, sans-serif; color: #2B2733;}}
-.fz-caution, .fz-marked, .fz-status {{font: 13px/1.4 system-ui, sans-serif; color: #514B5E;}}
-.fz-status.fz-trouble {{color: #2B2733; background: #FFF4D6; border-left: 4px solid #8A6100;
-  padding: 4px 10px;}}
-</style>"""
+_NARROWEST = {"section": 340, "graph": 340, "faces": 640, "matrix": 480}
+"""Pixels that a picture needs; where two do not fit side by side they stand below each other."""
 
-_NARROWEST = 440
-"""Pixels below which section and graph no longer stand side by side."""
+_SPOKEN = {
+    "bar": "Throw split; the number boxes do the same",
+    "section": "Section across the fault zone",
+    "graph": "Pathway graph; the menus of windows, pairs and pathways choose the same",
+    "faces": "Strand faces; the menu of windows chooses the same",
+    "matrix": "Sand pairs; the menus of sands choose the same",
+}
+"""What a screen reader says of a picture."""
 
 _PATHWAYS = 6
 """Pathways offered for a chosen pair."""
@@ -76,6 +90,8 @@ class Workbench:
         self._shown = params
         self._selection = NOTHING
         self._pathways: list[Pathway] = []
+        self._edges: list[Edge] = []
+        self._listed: Study | None = None
         self._closed = False
 
         names = scenario.strands.names
@@ -85,13 +101,13 @@ class Workbench:
         self.faces = faces_figure(self.study, params.distance)
         self.graph = pathway_graph_figure(self.study)
         self.matrix = pair_matrix_figure(self.study)
-        self._pictures = (self.section, self.faces, self.graph, self.matrix)
+        self._pictures = (self.section, self.graph, self.faces, self.matrix)
         self.pane = FigurePane(self._arranged())
         self.bar.batch = self.pane.batch
 
-        self.strip = HTML(layout=Layout(width="100%"))
-        self.marked = HTML(layout=Layout(width="100%"))
-        self.status = HTML(layout=Layout(width="100%"))
+        self.strip, self.marked, self.status, self.notes = (
+            HTML(layout=Layout(width="auto")) for _ in range(4)
+        )
         self.widget = self._laid_out()
 
         self._scheduler: Scheduler[Params] = Scheduler(
@@ -99,10 +115,13 @@ class Workbench:
         )
         self.controls.on_change(lambda params, final: self._scheduler.request(params, final=final))
         self.controls.pathway.observe(self._guarded(self._on_pathway), names=["value"])
+        self.controls.window.observe(self._guarded(self._on_window), names=["value"])
         self.controls.clear.on_click(self._guarded(lambda _: self.choose(NOTHING)))
         self.controls.export.on_click(self._guarded(lambda _: self._export()))
         for picture in self._pictures:
+            picture.batch = self.pane.batch
             picture.on_pick(self._guarded(self.choose))
+        self._list_windows()
         self._tell()
 
     @property
@@ -120,6 +139,7 @@ class Workbench:
         with self.pane.batch():
             for picture in self._pictures:
                 picture.mark(selection)
+        self._show_window()
         self._tell()
 
     def state(self) -> dict[str, Any]:
@@ -156,6 +176,7 @@ class Workbench:
         self.close()
 
     def _ipython_display_(self, **_: Any) -> None:
+        display(Javascript(NAMES_SCRIPT))
         show(self.widget, self.pane)
 
     def __repr__(self) -> str:
@@ -199,7 +220,8 @@ class Workbench:
                 picture.mark(selection)
 
     def _settle(self, params: Params) -> None:
-        """When the hand rests: list the pathways of the chosen pair anew."""
+        """When the hand rests: list windows, and the pathways of the chosen pair, anew."""
+        self._list_windows()
         if params.pair is not None:
             self._list_pathways()
 
@@ -214,6 +236,28 @@ class Workbench:
             self._pathways = list(self.study.network.pathways(*pair, limit=_PATHWAYS))
         labels = ["widest", *(_label(i, way) for i, way in enumerate(self._pathways, start=1))]
         self.controls.set_pathways(labels if self._pathways else [])
+
+    def _list_windows(self) -> None:
+        """Fill the menu of windows, the largest first, so that a keyboard can choose them all."""
+        if self._listed is not self.study:
+            self._listed = self.study
+            self._edges, labels = windows_menu(self.study)
+            self.controls.set_windows(labels)
+        self._show_window()
+
+    def _show_window(self) -> None:
+        """Let the menu of windows say which one is marked, if it is one alone."""
+        edges = self._selection.edges
+        is_one = len(edges) == 1 and self._selection.pair is None and edges[0] in self._edges
+        self.controls.show_window(self._edges.index(edges[0]) + 1 if is_one else 0)
+
+    def _on_window(self, change: dict[str, Any]) -> None:
+        if self.controls.is_writing or change["new"] is None:
+            return
+        edge = self._edges[change["new"] - 1] if change["new"] else None
+        # the menu may be older than the study while a slider is on the move
+        is_there = edge is not None and self.study.network.graph.has_edge(*edge)
+        self.choose(of_edge(self.study, edge) if edge and is_there else NOTHING)
 
     def _on_pathway(self, change: dict[str, Any]) -> None:
         rank = change["new"]
@@ -240,13 +284,17 @@ class Workbench:
     def _tell(self) -> None:
         """Bring the strip, the line on what is marked and the status up to date."""
         self.strip.value = strip_html(self.study, self._shown.pair)
-        label = self._selection.label or "nothing; choose a window, a link, a sand or a pair"
-        self.marked.value = f'<div class="fz-marked">Marked: {escape(label)}</div>'
-        self._say(" ".join(f"{sentence}." for sentence in self.study.warnings))
+        label = self._selection.label or "nothing yet; click a window, a link, a sand or a pair"
+        self.marked.value = f'<div class="fz-marked"><b>Marked:</b> {escape(label)}</div>'
+        notes = "".join(f"<p>{escape(_sentence(one))}</p>" for one in self.study.warnings)
+        self.notes.value = f'<div class="fz-note"><b>Note</b>{notes}</div>' if notes else ""
+        self._say("")
 
     def _say(self, text: str, *, trouble: bool = False) -> None:
         kind = "fz-status fz-trouble" if trouble else "fz-status"
         self.status.value = f'<div class="{kind}" role="status">{escape(text)}</div>'
+        # an empty line would still take its place
+        self.status.layout.display = None if text else "none"
 
     def _report(self, error: Exception) -> None:
         """Say an error where the user sees it; one that is our own fault is logged as well."""
@@ -274,35 +322,30 @@ class Workbench:
 
     def _arranged(self) -> Any:
         """Return the layout of all figures: one bokeh document."""
-        # side by side where there is room, below each other where there is not
-        for figure in (self.section.figure, self.graph.figure):
-            figure.min_width = _NARROWEST
-        pair = row(
-            self.section.figure,
-            self.graph.figure,
-            sizing_mode="stretch_width",
-            styles={"flex-wrap": "wrap"},
-        )
-        return column(
-            self.bar.figure,
-            pair,
-            self.faces.figure,
-            self.matrix.figure,
-            sizing_mode="stretch_width",
-        )
+        for name, view in zip(_NARROWEST, self._pictures, strict=True):
+            view.figure.html_attributes = {"role": "group", "aria-label": _SPOKEN[name]}
+        self.bar.figure.html_attributes = {"role": "group", "aria-label": _SPOKEN["bar"]}
+        # Side by side where there is room, below each other where there is not. Each in a box of
+        # its own, or bokeh would give neighbours margins that are as large as each other's.
+        wrap: Any = {"flex-wrap": "wrap", "gap": "16px 14px"}
+        boxes: dict[str, Any] = {}
+        for (name, narrow), view in zip(_NARROWEST.items(), self._pictures, strict=True):
+            grow: Any = {"flex": f"1 1 {narrow}px"}
+            boxes[name] = column(view.figure, sizing_mode="stretch_width", styles=grow)
+        rows = [
+            row([boxes[name] for name in names], sizing_mode="stretch_width", styles=wrap)
+            for names in (("section", "graph"), ("faces", "matrix"))
+        ]
+        return column([self.bar.figure, *rows], sizing_mode="stretch_width")
 
     def _laid_out(self) -> VBox:
-        title = HTML(f'{_STYLE}<div class="fz-title">{escape(self._base.name)}</div>')
+        title = HTML(f'{STYLE}<div class="fz-title">{escape(self._base.name)}</div>')
         caution = HTML(f'<div class="fz-caution">{escape(CAUTION)}</div>')
-        self.pane.widget.layout.flex = "1 1 520px"
-        body = HBox(
-            [self.controls.widget, self.pane.widget],
-            layout=Layout(flex_flow="row wrap", width="100%", align_items="flex-start"),
-        )
-        return VBox(
-            [title, self.strip, self.marked, self.status, body, caution],
-            layout=Layout(width="100%"),
-        )
+        head = VBox([self.strip, self.marked, self.status]).add_class("fz-head")
+        side = VBox([self.controls.widget, self.notes]).add_class("fz-side")
+        body = HBox([side, self.pane.widget], layout=Layout(width="100%", align_items="flex-start"))
+        box = VBox([title, head, body.add_class("fz-body"), caution], layout=Layout(width="100%"))
+        return box.add_class("fz-workbench")
 
 
 def _most(scenario: Scenario) -> int:
@@ -311,7 +354,12 @@ def _most(scenario: Scenario) -> int:
 
 def _label(rank: int, pathway: Pathway) -> str:
     """Return a pathway for a menu: short, since menus are narrow."""
-    return f"{rank}: crosses {pathway.crossings} times, {pathway.bottleneck_area:,.0f} m²"
+    times = "once" if pathway.crossings == 1 else f"{pathway.crossings} times"
+    return f"{rank}: {area_text(pathway.bottleneck_area)}, crosses {times}"
+
+
+def _sentence(words: str) -> str:
+    return f"{words[:1].upper()}{words[1:]}."
 
 
 def workbench(scenario: Scenario) -> Workbench:

@@ -9,9 +9,9 @@ from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
-    from fzconnect.cli import write_study
     from fzconnect.geometry import FaultZone, Windows, find_windows
     from fzconnect.network import FaultNetwork, Study, export_graph, study
+    from fzconnect.output import write_study
     from fzconnect.scenario import Scenario, demo, load, save
     from fzconnect.widgets.workbench import Workbench, workbench
 
@@ -31,7 +31,7 @@ _HOMES = {
     "save": "fzconnect.scenario",
     "Workbench": "fzconnect.widgets.workbench",
     "workbench": "fzconnect.widgets.workbench",
-    "write_study": "fzconnect.cli",
+    "write_study": "fzconnect.output",
 }
 
 __all__ = [

@@ -15,7 +15,7 @@ from pathlib import Path
 
 import pytest
 
-from fzconnect import cli
+from fzconnect import cli, output
 from fzconnect.scenario import store
 
 FILES = {
@@ -160,12 +160,12 @@ def test_a_disk_that_fails_elsewhere_is_no_fault_of_ours(tmp_path, monkeypatch, 
 
 
 def test_a_step_of_over_a_second_shows_how_far_it_is(capsys):
-    with cli._Progress("long", is_shown=True) as step:
+    with output._Progress("long", is_shown=True) as step:
         step(1, 4)
         time.sleep(1.3)
-    with cli._Progress("short", is_shown=True):
+    with output._Progress("short", is_shown=True):
         pass
-    with cli._Progress("unseen", is_shown=False):
+    with output._Progress("unseen", is_shown=False):
         pass
     told = capsys.readouterr().err
     assert "long:  25%" in told

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
-from bokeh.models import ColumnDataSource, Range1d
+from bokeh.models import ColumnDataSource, FixedTicker, Range1d
 from bokeh.models.glyphs import MultiLine, Patch, Patches, Quad, Segment
 from numpy.typing import NDArray
 
@@ -21,7 +21,6 @@ from fzconnect.views.look import (
     nice_step,
     number_text,
     one_row,
-    relabel,
     set_range,
     spread,
     thinned,
@@ -109,17 +108,24 @@ class FacesView(Picture):
         beside = (_LEADER + room / (self.width - 2 * room)) * self._end
         facet = length / (self._end + 2 * beside) * self.width  # px
         set_range(self.figure.x_range, -beside, self._end + beside)
-        set_range(self.figure.y_range, self._base, self._top - 22 * self._pixel)
+        foot = self._base + 24 * self._pixel  # below it stands the axis, above it are its labels
+        set_range(self.figure.y_range, foot, self._top - 22 * self._pixel)
         step = nice_step(length, max(1, int(facet / 56)))
         ticks = np.arange(np.ceil(first / step) * step, first + length + 1e-6 * step, step)
-        labels = {
-            float(offset + tick - first): number_text(float(tick))
+        marks = [
+            (float(offset + tick - first), number_text(float(tick)))
             for offset in self._offsets
             for tick in ticks
             # the last label of a facet would run into the first one of the next
             if offset == self._offsets[-1] or tick - first <= 0.88 * length
+        ]
+        self._sources["ticks"].data = {
+            "x": [x for x, _ in marks],
+            "y": [self._base + 14 * self._pixel] * len(marks),
+            "text": [text for _, text in marks],
+            "y0": [self._base] * len(marks),
+            "y1": [self._base + 5 * self._pixel] * len(marks),
         }
-        relabel(self.figure.xaxis[0], labels)
         ends = f"{number_text(first)} to {number_text(first + length)}"
         self.figure.xaxis[0].axis_label = f"Along the fault, m: {ends} in each frame"
         longest = max(len(name) for name in zone.strand_names)
@@ -320,6 +326,11 @@ class FacesView(Picture):
                 line_width=0.8,
             )
             write(plot, source[name], text_align=align, text_font_size=SMALL_SIZE)
+        # as glyphs: other ticks on an axis would have bokeh lay out all figures of a page anew
+        plot.xaxis[0].ticker = FixedTicker(ticks=[])
+        plot.xaxis[0].axis_line_color = None
+        draw(plot, Segment, "x", "y0", "x", "y1", source=source["ticks"], line_color=palette.QUIET)
+        write(plot, source["ticks"], text_align="center")
         write(
             plot,
             source["titles"],
@@ -362,6 +373,7 @@ _EMPTY: dict[str, tuple[str, ...]] = {
     "names left": _NAMES,
     "names right": _NAMES,
     "titles": ("x", "y", "text"),
+    "ticks": ("x", "y", "text", "y0", "y1"),
 }
 
 

@@ -19,7 +19,6 @@ from fzconnect.views.look import (
     block_text,
     draw,
     one_row,
-    relabel,
     set_range,
     spread,
     thinned,
@@ -85,7 +84,7 @@ class PathwayGraphView(Picture):
         pad = 0.03 * (base - top)
         self._pixel = (base - top + 2 * pad) / max(1, self._height - _AXES)
         self._top, self._base = top - pad, base + pad
-        set_range(self.figure.y_range, self._base, self._top - 44 * self._pixel)
+        set_range(self.figure.y_range, self._base, self._top - 66 * self._pixel)
         shown = np.maximum(thick, 4 * self._pixel)
         self._where = dict(zip(ids, zip(block.tolist(), middle.tolist(), strict=True), strict=True))
         self._shown_thickness = dict(zip(ids, shown.tolist(), strict=True))
@@ -160,11 +159,15 @@ class PathwayGraphView(Picture):
             titles |= {float(j): blocks[j] for j in range(1, last)}
         elif last > 1:
             titles[0.5 * last] = f"lenses 1 to {last - 1}"
-        relabel(self.figure.xaxis[0], dict(sorted(titles.items())))
+        self._sources["titles"].data = {
+            "x": list(titles),
+            "y": [self._top - 28 * self._pixel] * len(titles),
+            "text": list(titles.values()),
+        }
         prefix = "strand " if unit > _CHARACTER * (7 + max(map(len, zone.strand_names))) else ""
         self._sources["strands"].data = {
             "x": [j + 0.5 for j in range(last)],
-            "y": [self._top - 20 * self._pixel] * last,
+            "y": [self._top - 14 * self._pixel] * last,
             "text": [f"{prefix}{name}" for name in zone.strand_names],
         }
         self._sources["columns"].data = {
@@ -212,15 +215,11 @@ class PathwayGraphView(Picture):
             x_range=Range1d(start=0, end=1),
             y_range=Range1d(start=1, end=0),
             y_axis_label="Depth, m",
-            x_axis_location="above",
             outline_line_color=None,
         )
-        plot.xaxis[0].update(
-            major_label_text_font_size=LABEL_SIZE,
-            major_label_text_font_style="bold",
-            major_tick_line_color=None,
-            axis_line_color=None,
-        )
+        # blocks are named by glyphs: other labels on an axis would have bokeh lay out all figures
+        # of a page anew
+        plot.xaxis.visible = False
         ends = ("x0", "y0", "x1", "y1")
         draw(plot, Segment, *ends, source=source["columns"], line_color=palette.RULE, line_width=1)
         violet: dict[str, Any] = {
@@ -287,6 +286,15 @@ class PathwayGraphView(Picture):
             **bar,
         )
         for name, style in (
+            (
+                "titles",
+                {
+                    "text_align": "center",
+                    "text_baseline": "bottom",
+                    "text_font_size": LABEL_SIZE,
+                    "text_font_style": "bold",
+                },
+            ),
             ("names", {"text_align": "align", "text_font_size": SMALL_SIZE}),
             (
                 "strands",
@@ -370,6 +378,7 @@ _EMPTY: dict[str, tuple[str, ...]] = {
     "contacts": _EDGE,
     "critical": ("x", "y"),
     "names": _NAME,
+    "titles": ("x", "y", "text"),
     "strands": ("x", "y", "text"),
     "marked edges": ("x0", "y0", "x1", "y1", "width", "casing"),
     "marked nodes": ("x", "y", "height"),

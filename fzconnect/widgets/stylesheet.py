@@ -12,7 +12,7 @@ from fzconnect.views.look import FONT
 from fzconnect.views.palette import ACCENT, INK, PAPER, QUIET, RULE
 from fzconnect.views.strip import STRIP_STYLE
 
-__all__ = ["NAMES_SCRIPT", "STYLE"]
+__all__ = ["SCRIPT", "STYLE"]
 
 _EDGE = "#8A8494"  # edges of controls: 3 to 1 on paper
 
@@ -49,6 +49,11 @@ _SHEET = f"""
 .fz-note b {{display: block; color: {INK};}}
 .fz-status.fz-trouble {{color: {INK}; background: #FFF4D6; border-left: 4px solid #8A6100;
   padding: 5px 12px; font-size: 14px;}}
+.fz-workbench.jupyter-widgets-disconnected::before {{
+  content: "The kernel of this workbench is gone. Run the cell again to go on.";
+  position: sticky; top: 0; z-index: 9; padding: 8px 12px; font: 700 14px/1.4 {FONT};
+  color: {INK}; background: #FFF4D6; border-left: 4px solid #8A6100;}}
+.fz-workbench .jupyter-widgets-disconnected::before {{content: none; display: none;}}
 .fz-caution {{border-top: 1px solid {RULE}; padding-top: 6px; margin-top: 8px;}}
 """
 
@@ -104,7 +109,7 @@ _PLACES = """
 STYLE = f"<style>{_THEME}{STRIP_STYLE}{_SHEET}{_CONTROLS}{_PLACES}</style>"
 """All of it, for an HTML widget inside the workbench."""
 
-NAMES_SCRIPT = """
+SCRIPT = """
 (function() {
   // Handles of sliders come without a name for screen readers: they get that of their label.
   let left = 120;
@@ -119,6 +124,15 @@ NAMES_SCRIPT = """
     if (--left) setTimeout(name, 500);
   };
   name();
+  // Arrows and letters belong to the menu or slider that has the focus, not to the notebook, which
+  // would go to another cell or cut this one. Keys with Ctrl, Alt or Cmd stay the notebook's.
+  if (window.fzconnect_keys) return;
+  window.fzconnect_keys = true;
+  window.addEventListener("keydown", function(event) {
+    const at = event.target, isOurs = !(event.ctrlKey || event.metaKey || event.altKey);
+    if (!(at instanceof Element && at.closest(".fz-workbench"))) return;
+    at.toggleAttribute("data-lm-suppress-shortcuts", isOurs);
+  }, true);
 })();
 """
-"""JavaScript that names the sliders of a workbench that is about to appear."""
+"""JavaScript for a workbench that is about to appear: what only the browser's side can do."""

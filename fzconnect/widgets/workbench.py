@@ -35,7 +35,7 @@ from fzconnect.widgets.pane import FigurePane, show
 from fzconnect.widgets.params import Params
 from fzconnect.widgets.scheduler import Scheduler
 from fzconnect.widgets.splitbar import SplitBar
-from fzconnect.widgets.stylesheet import NAMES_SCRIPT, STYLE
+from fzconnect.widgets.stylesheet import SCRIPT, STYLE
 
 if TYPE_CHECKING:
     from fzconnect.network import Pathway, Study
@@ -176,7 +176,7 @@ class Workbench:
         self.close()
 
     def _ipython_display_(self, **_: Any) -> None:
-        display(Javascript(NAMES_SCRIPT))
+        display(Javascript(SCRIPT))
         show(self.widget, self.pane)
 
     def __repr__(self) -> str:
@@ -202,22 +202,18 @@ class Workbench:
         with self.pane.batch():
             self.controls.show(params)
             self.study, self._shown = fresh, params
+            kept = renewed(fresh, self._selection) if is_new else self._selection
+            is_marked_new, self._selection = kept != self._selection, kept
+            self._tell()  # the figures first: they are seen while pictures are still on their way
             self.section.stand(params.is_upright)
             self.section.update(fresh, params.distance)
             self.faces.update(fresh, params.distance)
             if is_new:
                 self.graph.update(fresh)
                 self.matrix.update(fresh)
-                self._renew_selection()
-        self._tell()
-
-    def _renew_selection(self) -> None:
-        """Keep what is marked as far as the changed study still has it."""
-        selection = renewed(self.study, self._selection)
-        if selection != self._selection:
-            self._selection = selection
-            for picture in self._pictures:
-                picture.mark(selection)
+            if is_marked_new:
+                for picture in self._pictures:
+                    picture.mark(kept)
 
     def _settle(self, params: Params) -> None:
         """When the hand rests: list windows, and the pathways of the chosen pair, anew."""
@@ -269,7 +265,7 @@ class Workbench:
             self.choose(of_pathway(self.study, self._pathways[rank - 1]))
 
     def _export(self) -> None:
-        from fzconnect.cli import write_study
+        from fzconnect.output import write_study
 
         folder = self.controls.folder.value.strip()
         if not folder:

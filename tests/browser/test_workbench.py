@@ -47,7 +47,7 @@ def view(opened: View) -> Iterator[View]:
     own = button(opened, "Back to the scenario's split")
     if own.is_enabled():
         own.click()
-    opened.wait_until(lambda: "57 windows" in opened.text(STRIP))
+    opened.wait_until(lambda: "59 windows" in opened.text(STRIP))
     opened.wait_until(lambda: values(opened) == ["40.9", "33.3", "25.8"])
     opened.wait_until(lambda: "nothing yet" in opened.text(MARKED))
     yield opened
@@ -184,7 +184,9 @@ def test_a_tap_on_a_link_of_the_graph_marks_its_window(view: View) -> None:
     lines = data(view, GRAPH, "x0", "y0", "x1", "y1", "name", "critical")[0]
     # one that no other crosses in its middle: the only one of S8 on its strand
     row = next(i for i, name in enumerate(lines["name"]) if name.count(": S8") == 2)
-    across, down = ((lines[a][row] * 2 + lines[b][row]) / 3 for a, b in (("x0", "x1"), ("y0", "y1")))
+    across, down = (
+        (lines[a][row] * 2 + lines[b][row]) / 3 for a, b in (("x0", "x1"), ("y0", "y1"))
+    )
     faces = picture(view, FACES)
     view.page.mouse.click(*place(view, GRAPH, across, down))
     view.wait_until(lambda: lines["name"][row] in view.text(MARKED))
@@ -226,12 +228,8 @@ def test_strip_and_controls_stay_in_view_while_pictures_scroll(view: View) -> No
         assert 0 < box["y"] < 260
 
 
-def test_a_step_is_seen_soon(
-    view: View, measured: Callable[[str, Sequence[float]], float]
-) -> None:
-    times = [
-        time_step(view, "ArrowLeft" if step % 6 > 2 else "ArrowRight") for step in range(18)
-    ]
+def test_a_step_is_seen_soon(view: View, measured: Callable[[str, Sequence[float]], float]) -> None:
+    times = [time_step(view, "ArrowLeft" if step % 6 > 2 else "ArrowRight") for step in range(18)]
     words, drawn = zip(*times, strict=True)
     # The budget is 150 ms; machines that tests run on may be busy.
     assert measured("workbench, key on strand count to strip", words) < 400

@@ -9,6 +9,8 @@ from typing import TYPE_CHECKING
 from fzconnect.views.look import FONT
 from fzconnect.views.palette import ACCENT, INK, QUIET
 
+from fzconnect.views.look import number_text
+
 if TYPE_CHECKING:
     from fzconnect.network import Study
 
@@ -67,8 +69,8 @@ def strip_figures(study: Study, pair: tuple[str, str] | None = None) -> tuple[Fi
         ),
         Figure(
             "Window area, m²",
-            _area(zone["window_area"]),
-            _area(plane["window_area"]),
+            number_text(zone["window_area"]),
+            number_text(plane["window_area"]),
             f"{zone['windows']} windows, single plane {plane['windows']}",
         ),
         _bottleneck(study, pair),
@@ -87,17 +89,21 @@ def _bottleneck(study: Study, pair: tuple[str, str] | None) -> Figure:
         zone, plane = study.counts("zone"), study.counts("single plane")
         return Figure(
             "Widest bottleneck, m²",
-            _area(zone["widest_bottleneck"]),
-            _area(plane["widest_bottleneck"]),
+            number_text(zone["widest_bottleneck"]),
+            number_text(plane["widest_bottleneck"]),
             "of all sand pairs",
         )
     one = next(p for p in study.pairs if (p.hanging_wall_sand, p.footwall_sand) == pair)
     return Figure(
         "Bottleneck, m²",
-        _area(one.bottleneck_area) if one.connected else "not connected",
-        _area(one.bottleneck_area_single_plane) if one.connected_single_plane else "not connected",
+        _width(one.connected, one.bottleneck_area),
+        _width(one.connected_single_plane, one.bottleneck_area_single_plane),
         f"hanging wall {pair[0]} to footwall {pair[1]}",
     )
+
+
+def _width(connected: bool, area: float) -> str:
+    return number_text(area) if connected else "not connected"
 
 
 def strip_html(study: Study, pair: tuple[str, str] | None = None) -> str:
@@ -110,7 +116,3 @@ def strip_html(study: Study, pair: tuple[str, str] | None = None) -> str:
         for figure in strip_figures(study, pair)
     )
     return f'<div class="fz-strip" aria-live="polite">{cards}</div>'
-
-
-def _area(area: float) -> str:
-    return f"{area:,.0f}".replace(",", "\u202f")  # narrow spaces part the thousands

@@ -6,10 +6,8 @@ from dataclasses import dataclass
 from html import escape
 from typing import TYPE_CHECKING
 
-from fzconnect.views.look import FONT
+from fzconnect.views.look import FONT, number_text
 from fzconnect.views.palette import ACCENT, INK, QUIET
-
-from fzconnect.views.look import number_text
 
 if TYPE_CHECKING:
     from fzconnect.network import Study

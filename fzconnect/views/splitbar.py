@@ -56,6 +56,7 @@ class SplitBarView:
     def __init__(self, names: Sequence[str], shares: Sequence[float], tips: Sequence[bool]) -> None:
         self.joints: tuple[Joint, ...] = ()
         self._pieces = ColumnDataSource(_columns(_PIECE))
+        self._hatched = ColumnDataSource(_columns(_HATCHED))
         self._labels = ColumnDataSource(_columns(_LABEL))
         self._handles = ColumnDataSource(_columns(_HANDLE))
         self._range = Range1d(start=0, end=1)
@@ -141,6 +142,12 @@ class SplitBarView:
             self._span = span
             self._range.update(start=-MARGIN * span, end=(1 + MARGIN) * span)
         self._pieces.data = pieces
+        hatched = _columns(_HATCHED)
+        for left, right, _, _, _, hatch in zip(*pieces.values(), strict=True):
+            if hatch.strip():
+                _add(hatched, left, right, *SECOND_LANE)
+        if hatched["x0"] or self._hatched.data["x0"]:
+            self._hatched.data = hatched
         self._labels.data = labels
         self._handles.data = {
             "x": [joint.at for joint in self.joints],
@@ -188,7 +195,17 @@ class SplitBarView:
             source=self._pieces,
             fill_color="fill",
             line_color="#8B8497",
-            hatch_pattern="hatch",
+        )
+        # by themselves, because browsers are slow at patterns and mostly there is none to draw
+        plot.quad(
+            "x0",
+            "x1",
+            "y0",
+            "y1",
+            source=self._hatched,
+            fill_alpha=0,
+            line_alpha=0,
+            hatch_pattern="right_diagonal_line",
             hatch_color="#BDB7C9",  # light: a label has to be read over it
             hatch_scale=8,
             hatch_weight=1,
@@ -246,6 +263,7 @@ class SplitBarView:
 
 Columns = dict[str, Any]
 _PIECE = ("left", "right", "bottom", "top", "fill", "hatch")
+_HATCHED = ("x0", "x1", "y0", "y1")
 _LABEL = ("x", "y", "text", "align")
 _HANDLE = ("x", "y")
 

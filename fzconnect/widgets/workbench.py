@@ -78,9 +78,10 @@ class Workbench:
 
     Notes
     -----
-    One path only: control, `Params`, scheduler, study, pictures. What cannot be studied (a throw
-    that leaves the column, say) is told in the status line, and the pictures keep the last study
-    that could.
+    One path only: control, `Params`, scheduler, study, pictures. Strip, section and pathway graph
+    follow the hand; strand faces and sand-pair matrix follow when it rests. What cannot be studied
+    (a throw that leaves the column, say) is told in the status line, and the pictures keep the last
+    study that could.
     """
 
     def __init__(self, scenario: Scenario) -> None:
@@ -91,7 +92,7 @@ class Workbench:
         self._selection = NOTHING
         self._pathways: list[Pathway] = []
         self._edges: list[Edge] = []
-        self._listed: Study | None = None
+        self._settled = self.study
         self._closed = False
 
         names = scenario.strands.names
@@ -192,7 +193,7 @@ class Workbench:
             self._choose_pair(params.pair)
 
     def _draw(self, params: Params) -> None:
-        """Study and show `params`; on an error the last good study stays on the screen."""
+        """Study `params`, show what follows a hand; on an error the last good study stays."""
         is_new = not params.asks_the_same(self._shown)
         fresh = study(params.apply(self._base), like=self.study) if is_new else self.study
         # whatever can be refused is asked before anything is changed
@@ -207,17 +208,22 @@ class Workbench:
             self._tell()  # the figures first: they are seen while pictures are still on their way
             self.section.stand(params.is_upright)
             self.section.update(fresh, params.distance)
-            self.faces.update(fresh, params.distance)
-            if is_new:
-                self.graph.update(fresh)
-                self.matrix.update(fresh)
+            self.graph.update(fresh)
+            if fresh is self._settled:  # then only the section line moves there
+                self.faces.update(fresh, params.distance)
             if is_marked_new:
                 for picture in self._pictures:
                     picture.mark(kept)
 
     def _settle(self, params: Params) -> None:
-        """When the hand rests: list windows, and the pathways of the chosen pair, anew."""
-        self._list_windows()
+        """When the hand rests: show what is left to show, and fill the menus anew."""
+        if self._settled is not self.study:
+            self._settled = self.study
+            with self.pane.batch():
+                self.faces.update(self.study, self._shown.distance)
+                self.matrix.update(self.study)
+            self._list_windows()
+        self._show_window()
         if params.pair is not None:
             self._list_pathways()
 
@@ -235,11 +241,8 @@ class Workbench:
 
     def _list_windows(self) -> None:
         """Fill the menu of windows, the largest first, so that a keyboard can choose them all."""
-        if self._listed is not self.study:
-            self._listed = self.study
-            self._edges, labels = windows_menu(self.study)
-            self.controls.set_windows(labels)
-        self._show_window()
+        self._edges, labels = windows_menu(self.study)
+        self.controls.set_windows(labels)
 
     def _show_window(self) -> None:
         """Let the menu of windows say which one is marked, if it is one alone."""

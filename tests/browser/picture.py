@@ -1,7 +1,7 @@
-"""Make the README's picture of the workbench: `python -m tests.browser.picture`.
+"""Make the picture of the workbench in the README: `python tests/browser/picture.py`.
 
-A real screenshot of the first notebook in JupyterLab and Chromium, with a pair chosen so that the
-marks show, cropped to the workbench.
+A screenshot of the first notebook in a real JupyterLab, cut to the workbench, with a pair chosen so
+that marks show. It needs Chromium.
 """
 
 from __future__ import annotations
@@ -13,49 +13,60 @@ from pathlib import Path
 
 from PIL import Image
 
-from .lab import Lab, find_browser, launch, start_lab
-from .test_workbench import LOWER, MATRIX, NOTEBOOK, PICTURE, UPPER, choose
+ROOT = Path(__file__).parents[2]
+sys.path.insert(0, str(ROOT))  # run as a script, not as a module
 
-TARGET = NOTEBOOK.parent / "images" / "workbench.png"
-LARGEST = 400_000
-"""Bytes that the picture may have."""
-SIZE = (1280, 1500)
-SHOWN = 1180
-"""Pixels of the workbench's height that are kept: down to the end of the strand faces."""
+from tests.browser.lab import Lab, find_browser, launch, start_lab  # noqa: E402  the path is first
+
+__all__ = ["make"]
+
+NOTEBOOK = ROOT / "notebooks" / "01-first-look.ipynb"
+PICTURE = ROOT / "notebooks" / "images" / "workbench.png"
+PAIR = ("S4", "S4")
+WIDTH, MOST = 1400, 400_000  # px of the window, bytes of the file
 
 
-def main() -> int:
-    """Write the picture; return 1 if it is too large."""
-    browser_path = find_browser()
-    if browser_path is None:
-        sys.stderr.write("the picture needs Chromium\n")
-        return 1
+def make(path: Path) -> int:
+    """Write the picture to `path` and return its size in bytes.
+
+    Raises
+    ------
+    RuntimeError
+        If the page shows trouble, or the picture takes more than 400 kB.
+    """
+    browser = find_browser()
+    if browser is None:
+        msg = "no Chromium found on this machine: the picture needs one"
+        raise RuntimeError(msg)
     with (
         tempfile.TemporaryDirectory() as scratch,
         start_lab(Path(scratch)) as server,
-        launch(browser_path) as browser,
-        Lab(server, browser).open(NOTEBOOK, width=SIZE[0], height=SIZE[1]) as view,
+        launch(browser) as chromium,
+        Lab(server, chromium).open(NOTEBOOK, width=WIDTH, height=2200) as view,
     ):
-        view.find(PICTURE, MATRIX)
-        choose(view, UPPER, "S7")
-        choose(view, LOWER, "S4")
-        view.wait_until(lambda: "S7 in the hanging wall" in view.text(".fz-marked"))
-        view.page.wait_for_timeout(1500)
-        bench = view.page.locator(".fz-workbench")
-        bench.evaluate("bench => bench.scrollIntoView({block: 'start'})")
-        view.page.wait_for_timeout(800)
-        box = bench.bounding_box()
-        assert box is not None
-        clip = {"x": box["x"], "y": box["y"], "width": box["width"], "height": SHOWN}
-        shot = view.page.screenshot(clip=clip)
-    # 128 colours are enough for flat tones, and a third of the bytes
-    picture = Image.open(BytesIO(shot)).convert("RGB").quantize(128)
-    TARGET.parent.mkdir(exist_ok=True)
-    picture.save(TARGET, optimize=True)
-    size = TARGET.stat().st_size
-    sys.stdout.write(f"{TARGET}: {picture.size[0]} x {picture.size[1]}, {size} bytes\n")
-    return 0 if size <= LARGEST else 1
+        menus = view.page.locator(".fz-workbench select")
+        for index, sand in enumerate(PAIR, start=1):
+            view.find(".fz-workbench select", index)
+            menus.nth(index).select_option(label=sand)
+        view.wait_until(lambda: "widest pathway" in view.text(".fz-marked"))
+        view.page.wait_for_timeout(2000)  # all pictures have followed
+        view.page.mouse.move(5, 5)
+        bench = view.find(".fz-workbench")
+        bench.evaluate("bench => bench.scrollIntoView()")
+        if view.troubles:
+            msg = f"the page shows trouble: {view.troubles}"
+            raise RuntimeError(msg)
+        shot = Image.open(BytesIO(bench.screenshot()))
+    path.parent.mkdir(parents=True, exist_ok=True)
+    few = shot.convert("RGB").quantize(128, dither=Image.Dither.NONE)
+    few.save(path, optimize=True)
+    size = path.stat().st_size
+    if size > MOST:
+        msg = f"{path} takes {size} bytes, allowed are {MOST}"
+        raise RuntimeError(msg)
+    return size
 
 
 if __name__ == "__main__":
-    sys.exit(main())
+    size = make(PICTURE)
+    print(f"{PICTURE.relative_to(ROOT)}: {size / 1000:.0f} kB")  # noqa: T201  a command

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterator, Sequence
+from io import BytesIO
 from pathlib import Path
 from typing import Any
 
 import pytest
+from PIL import Image, ImageChops
 
 from .lab import Lab, View
 from .test_splitbar import bar_points, notebook
@@ -32,26 +35,28 @@ FIGURES = """
 
 
 @pytest.fixture(scope="module")
-def opened(lab: Lab) -> Iterator[View]:
-    """The first notebook, run from top to bottom in a window 1200 px wide."""
+def opened(lab: Lab) -> Iterator[tuple[View, str, list[str]]]:
+    """The first notebook, run in a window 1200 px wide; what strip and boxes first say."""
     with lab.open(NOTEBOOK, width=1200, height=1000) as view:
         view.find(PICTURE, MATRIX)
-        yield view
+        yield view, view.text(STRIP), values(view)
 
 
 @pytest.fixture
-def view(opened: View) -> Iterator[View]:
+def view(opened: tuple[View, str, list[str]]) -> Iterator[View]:
     """The open notebook with its workbench as it was first shown; no test may leave trouble."""
-    button(opened, "Mark nothing").click()
-    set_slider(opened, COUNT, "3")
-    own = button(opened, "Back to the scenario's split")
+    view, strip, shares = opened
+    button(view, "Mark nothing").press("Enter")
+    set_slider(view, COUNT, str(len(shares)))
+    view.wait_until(lambda: len(values(view)) == len(shares))
+    own = button(view, "Back to the scenario's split")
     if own.is_enabled():
-        own.click()
-    opened.wait_until(lambda: "59 windows" in opened.text(STRIP))
-    opened.wait_until(lambda: values(opened) == ["40.9", "33.3", "25.8"])
-    opened.wait_until(lambda: "nothing yet" in opened.text(MARKED))
-    yield opened
-    assert opened.troubles == []
+        own.press("Enter")
+    view.wait_for_text(STRIP, strip)
+    view.wait_until(lambda: values(view) == shares)
+    view.wait_until(lambda: "nothing yet" in view.text(MARKED))
+    yield view
+    assert view.troubles == []
 
 
 def button(view: View, name: str) -> Any:
@@ -102,6 +107,13 @@ def is_other(view: View, index: int, old: bytes) -> bool:
     return True
 
 
+def is_alike(first: bytes, second: bytes) -> bool:
+    """Tell whether pictures are the same but for the smoothing of some edges."""
+    one, other = (Image.open(BytesIO(shot)).convert("L") for shot in (first, second))
+    counts = ImageChops.difference(one, other).histogram()
+    return one.size == other.size and sum(counts[16:]) < 0.002 * sum(counts)
+
+
 def place(view: View, index: int, x: float, y: float) -> tuple[float, float]:
     """Return the page coordinates of a point in the data of a picture."""
     bring(view, index)
@@ -139,18 +151,25 @@ def strands(view: View) -> list[str]:
 
 def test_a_key_on_the_strand_count_changes_pictures_and_figures(view: View) -> None:
     strip, section, graph = view.text(STRIP), picture(view, SECTION), picture(view, GRAPH)
+    faces, matrix = picture(view, FACES), picture(view, MATRIX)
     view.press("ArrowRight", SLIDER, COUNT)
-    view.wait_for_change(STRIP, strip)
+    now = view.wait_for_change(STRIP, strip)
     assert is_other(view, SECTION, section)
     assert is_other(view, GRAPH, graph)
+    assert is_other(view, FACES, faces)
     assert strands(view) == ["1", "2", "3", "4"]
     assert values(view) == ["25"] * 4
-    assert "single plane: 28" in view.text(STRIP)
+    # the single plane has nothing to do with the strands
+    planes = [[line for line in text.splitlines() if "plane:" in line] for text in (strip, now)]
+    assert planes[0] == planes[1]
+    assert len(planes[0]) == 4
+    view.press("End", SLIDER, COUNT)
+    assert is_other(view, MATRIX, matrix)
 
 
 def test_a_drag_of_a_joint_changes_shares_figures_and_pictures(view: View) -> None:
     strip, section = view.text(STRIP), picture(view, SECTION)
-    start, end = bar_points(view, 0.409, 0.55)
+    start, end = bar_points(view, float(values(view)[0]) / 100, 0.55)
     view.drag(start, end, release=False)
     view.wait_for_change(STRIP, strip)  # while the hand still holds it
     view.page.mouse.up()
@@ -158,16 +177,17 @@ def test_a_drag_of_a_joint_changes_shares_figures_and_pictures(view: View) -> No
     assert sum(map(float, values(view))) == pytest.approx(100, abs=0.11)
     assert is_other(view, SECTION, section)
     assert data(view, BAR, "text")[0]["text"][2].startswith("A  55 %")
-    button(view, "Back to the scenario's split").click()
+    button(view, "Back to the scenario's split").press("Enter")
     view.wait_for_text(STRIP, strip)
 
 
 def test_a_number_typed_with_the_keyboard_changes_the_split(view: View) -> None:
-    strip = view.text(STRIP)
+    strip, before = view.text(STRIP), values(view)[1]
     view.press("ArrowUp", BOX, 1)
     view.wait_for_change(STRIP, strip)
-    assert values(view)[1] == "34"
-    view.wait_until(lambda: data(view, BAR, "text")[0]["text"][3] == "B  34 %")
+    share = values(view)[1]  # a step up to whole numbers, as browsers do it
+    assert share == f"{math.floor(float(before)) + 1}"
+    view.wait_until(lambda: data(view, BAR, "text")[0]["text"][3] == f"B  {share} %")
 
 
 def test_a_tap_on_a_pair_marks_it_in_menus_words_and_pictures(view: View) -> None:
@@ -229,7 +249,7 @@ def test_strip_and_controls_stay_in_view_while_pictures_scroll(view: View) -> No
 
 
 def test_a_step_is_seen_soon(view: View, measured: Callable[[str, Sequence[float]], float]) -> None:
-    times = [time_step(view, "ArrowLeft" if step % 6 > 2 else "ArrowRight") for step in range(18)]
+    times = [time_step(view, "ArrowLeft" if step % 6 > 2 else "ArrowRight") for step in range(16)]
     words, drawn = zip(*times, strict=True)
     # The budget is 150 ms; machines that tests run on may be busy.
     assert measured("workbench, key on strand count to strip", words) < 400
@@ -238,7 +258,7 @@ def test_a_step_is_seen_soon(view: View, measured: Callable[[str, Sequence[float
 
 def time_step(view: View, key: str) -> tuple[float, float]:
     """Return the ms from a key on the strand count to another strip and to another section."""
-    view.page.wait_for_timeout(500)  # a hand rests between steps
+    view.page.wait_for_timeout(450)  # a hand rests between steps
     view.find(SLIDER, COUNT).focus()
     view.page.evaluate(
         f"""([strip, index]) => {{
@@ -253,7 +273,7 @@ def time_step(view: View, key: str) -> tuple[float, float]:
             const canvas = deep(figures[index].el.shadowRoot), paper = canvas.getContext("2d");
             const text = () => document.querySelector(strip).innerText;
             // some lines down the picture stand for all of it
-            const look = () => [0.35, 0.45, 0.55, 0.65, 0.75].map(part => {{
+            const look = () => [0.45, 0.65].map(part => {{
                 const x = Math.round(part * canvas.width);
                 return paper.getImageData(x, 0, 1, canvas.height).data.join();
             }}).join();
@@ -293,7 +313,7 @@ def test_a_page_loaded_anew_shows_the_present_state_and_stays_alive(view: View) 
     assert view.text(STRIP) == strip
     assert view.text(MARKED) == marked
     view.wait_until(lambda: strands(view) == ["1", "2", "3", "4", "5"])
-    view.wait_until(lambda: picture(view, GRAPH) == graph)
+    view.wait_until(lambda: is_alike(picture(view, GRAPH), graph))
     view.press("ArrowRight", SLIDER, COUNT)
     view.wait_for_change(STRIP, strip)
     assert len(strands(view)) == 6
@@ -350,3 +370,4 @@ def test_in_a_narrow_window_an_impossible_throw_is_a_sentence_and_the_way_back_w
         page.locator(".jp-Dialog-button.jp-mod-warn").click()
         said = f"getComputedStyle(document.querySelector('{BENCH}'), '::before').content"
         view.wait_until(lambda: "Run the cell again" in page.evaluate(said))
+        page.locator("#jp-main-statusbar").get_by_text("| Idle").wait_for()

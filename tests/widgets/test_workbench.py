@@ -226,12 +226,12 @@ def test_a_state_that_does_not_fit_changes_nothing(bench: Workbench) -> None:
     assert bench.state() == state
 
 
-def test_a_step_is_one_patch_and_few_messages(bench: Workbench, wire: Wire) -> None:
+def test_a_step_is_one_patch_and_one_at_rest_and_few_messages(bench: Workbench, wire: Wire) -> None:
     wire.clear()
     turn(bench.controls.count, 4)
     patches = [content for content in wire.custom if content.get("msg") == "patch"]
     headers = [part for part in patches if "msgtype" in str(part.get("payload", ""))]
-    assert len(headers) == 1
+    assert len(headers) == 2
     assert len(wire.messages) < 60
 
 

@@ -74,7 +74,8 @@ def set_slider(view: View, index: int, text: str) -> None:
 def values(view: View) -> list[str]:
     """Return what the number boxes in sight say."""
     boxes = view.page.locator(f"{BOX}:visible")
-    return [box.input_value() for box in boxes.all()]
+    # all at once: the page may have fewer of them a moment later
+    return list(boxes.evaluate_all("boxes => boxes.map(box => box.value)"))
 
 
 def choose(view: View, index: int, label: str) -> None:

@@ -15,6 +15,9 @@ rest of the package never meets it:
 - Every single change of a bokeh property costs three messages, and two more for every array. A
   patch may hold many changes, so those made inside `FigurePane.batch` go as one, with the arrays
   inside its text: three messages for a whole step of a slider.
+- The bridge's browser side sends every change that it has taken from Python back to Python, whole
+  columns included, each by itself: most of the work of a slider step, on both sides. BokehJS marks
+  such changes as not to be told on (`sync`), and the script that loads it makes that count.
 - Closing the bridge twice raises a KeyError; a pane may be closed as often as one likes.
 """
 
@@ -252,7 +255,21 @@ const part = function(mark, run) {{
   root.Bokeh.fzconnect_parts = there.concat([mark]);
 }};
 {parts}
+{_QUIET}
 }})(window);"""
+
+
+_QUIET = """
+const {Document} = root.Bokeh.require("document/document");
+if (!Document.fzconnect_is_quiet) {
+  Document.fzconnect_is_quiet = true;
+  const tell = Document.prototype._trigger_on_change;
+  const kinds = ["ModelChanged", "ColumnDataChanged", "ColumnsStreamed", "ColumnsPatched"];
+  Document.prototype._trigger_on_change = function(event) {
+    if (event.sync !== false || !kinds.includes(event.kind)) tell.call(this, event);
+  };
+}
+"""
 
 
 def _mark(source: str) -> str:

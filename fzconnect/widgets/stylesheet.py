@@ -101,6 +101,9 @@ _PLACES = """
 @container (min-width: 860px) {
   .fz-side {width: 236px; top: 124px; max-height: calc(100vh - 236px);}
 }
+/* a notebook windowed in full moves cells about, under which sticking parts go astray */
+.jp-WindowedPanel-viewport[style*="absolute"] .fz-head,
+.jp-WindowedPanel-viewport[style*="absolute"] .fz-side {position: static; max-height: none;}
 .jp-OutputArea:not(.jp-mod-outputsScrolled *):has(.fz-workbench),
 .jp-OutputArea-child:has(.fz-workbench), .jp-OutputArea-output:has(.fz-workbench)
   {overflow: visible;}

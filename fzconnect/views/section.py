@@ -112,7 +112,7 @@ class SectionView(Picture):
 
     def _fit(self) -> None:
         super()._fit()
-        if self._zone is not None and self.is_upright:
+        if self._zone is not None:
             self._zone = None
             self.update(self._study, self._section.distance)
 
@@ -138,12 +138,15 @@ class SectionView(Picture):
             room = min(_WALL_PART, 0.3 * self.width)  # px at least
             beside = max(_UPRIGHT_BESIDE * span, zone_width * room / (self.width - 2 * room))
         pixel = span / max(1, self._height - _AXES)  # metres that a pixel stands for, about
-        self._pixel = pixel
         half = 0.5 * (zone_width + slope * span)
-        across = 2 * (half + beside) / self.width
-        self._pixel_x = across if self.is_upright else pixel / stretch
+        if not self.is_upright:  # scales are coupled: a narrow figure draws depths smaller, too
+            pixel = max(pixel, 2 * (half + beside) * stretch / self.width)
+            beside = max(beside, (_WALL_PART + 18) * pixel / stretch)
+            pixel = max(pixel, 2 * (half + beside) * stretch / self.width)
+        across = 2 * (half + beside) / self.width if self.is_upright else pixel / stretch
+        self._pixel, self._pixel_x = pixel, across
         self._fits_lens = self.is_upright and self._lens >= _LENS_NAME * across
-        self._is_wide = not self.is_upright or beside >= _WALL_NAME * across
+        self._is_wide = beside >= _WALL_NAME * across
         names = max(len(name) for name in zone.strand_names)
         self._names_upright = zone.strand_count > 1 and names > 3
         above = (26 + 9 * names if self._names_upright else 38) * pixel
